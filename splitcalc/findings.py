@@ -1,0 +1,201 @@
+"""What a check is and what it finds; the one reducer from arrays to findings.
+
+A check is declared once and evaluates arrays; it never searches, formats or builds a finding.
+Inside, the number is the utilisation `required factor × demand / capacity`.
+"""
+
+from __future__ import annotations
+
+import html
+import math
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from splitcalc.equations import Line
+from splitcalc.equations.render import lines_of_text
+from splitcalc.units import MINUS, Dimension, number, show
+
+Array = Any
+
+
+@dataclass(frozen=True)
+class Check:
+    """One way in which the machine can fail, declared once.
+
+    id : stable name, as in the JSON output
+    title : trade words, the same everywhere
+    part : which part of the machine it is about
+    source : where the rule comes from
+    limit : which required factor it takes
+    dimension : of demand and capacity
+    convex : whether its measure is convex in the actions (then the search over logs is exact)
+    applies : (machine's numbers) -> (bool, why not)
+    evaluate : (numbers, actions) -> (demand, capacity), samples first, places last:
+        `samples + (stations, points)`, points 1 where there are none
+    place : (numbers, point index) -> words for the place in the section
+    assumptions : what a reviewer must know, as sentences
+    """
+
+    id: str
+    title: str
+    part: str
+    source: str
+    limit: str
+    dimension: Dimension
+    convex: bool
+    applies: Callable[[Any], tuple[bool, str]]
+    evaluate: Callable[[Any, Any], tuple[Array, Array]]
+    place: Callable[[Any, int], str]
+    assumptions: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True)
+class Finding:
+    """What a check found, for one set of logs. SI.
+
+    `given` is False when the check should apply but can't be given, `why` says so; then, and where
+    it doesn't apply, the numbers are None.
+    """
+
+    check: Check
+    set: str
+    applies: bool = True
+    given: bool = True
+    why: str = ""
+    demand: float | None = None
+    capacity: float | None = None
+    required_factor: float | None = None
+    x: float | None = None
+    place: str = ""
+    log: Mapping[str, Any] | None = None
+    replay: Callable[[], list[Line]] = list
+    units: Any = "si"
+
+    @property
+    def lines(self) -> list[Line]:
+        """The equations with the numbers of this finding, run once more with scalars."""
+        return self.replay()
+
+    @property
+    def utilisation(self) -> float | None:
+        if self.demand is None or self.capacity is None or self.required_factor is None:
+            return None
+        return self.required_factor * self.demand / self.capacity
+
+    @property
+    def margin(self) -> float | None:
+        """1 / utilisation − 1; None without demand or without numbers."""
+        u = self.utilisation
+        return 1 / u - 1 if u else None
+
+    @property
+    def holds(self) -> bool:
+        """Whether it holds or doesn't apply; a check that can't be given does not hold."""
+        if not self.applies:
+            return True
+        u = self.utilisation
+        return self.given and u is not None and u <= 1
+
+    def as_dict(self) -> dict[str, Any]:
+        """The finding as plain data, SI numbers: the shape of `check --json`."""
+        return {
+            "id": self.check.id,
+            "title": self.check.title,
+            "part": self.check.part,
+            "set": self.set,
+            "demand": self.demand,
+            "capacity": self.capacity,
+            "unit": self.check.dimension.si_unit,
+            "required_factor": self.required_factor,
+            "utilisation": self.utilisation,
+            "margin": self.margin,
+            "applies": self.applies,
+            "given": self.given,
+            "why": self.why,
+            "x_m": self.x,
+            "place": self.place,
+            "log": dict(self.log) if self.log else None,
+            "source": self.check.source,
+            "assumptions": list(self.check.assumptions),
+        }
+
+    def verdict(self) -> str:
+        """One line: title, place, demand against limit, margin."""
+        head = f"{self.check.title} ({self.set} logs)"
+        if not self.applies:
+            return f"{head}: does not apply, {self.why}"
+        if not self.given or self.demand is None or self.capacity is None:
+            return f"{head}: NOT GIVEN, {self.why}"
+        assert self.x is not None and self.required_factor is not None
+        kind = self.check.dimension
+        return (
+            f"{head} at x = {show(self.x, Dimension.LENGTH, self.units)}, {self.place}: "
+            f"{show(self.demand, kind, self.units)} against "
+            f"{show(self.capacity, kind, self.units)} / {self.required_factor:g}, "
+            f"margin {margin_text(self.utilisation)}"
+        )
+
+    def text(self) -> str:
+        """Verdict, equations (symbols, numbers with units, result), source, assumptions."""
+        out = [self.verdict()]
+        place = None
+        for line in self.lines:
+            source = line.equation.source
+            body = lines_of_text(line, self.units)
+            if line.place and line.place == place:
+                body = body[1:]
+            place = line.place
+            out += ["", *body, f"    source: {source}"]
+        out += ["", f"check's source: {self.check.source}"]
+        out += [f"assumption: {text}" for text in self.check.assumptions]
+        return "\n".join(out)
+
+    def show(self) -> Finding:
+        """Print the finding with its equations; in a notebook the finding shows itself too."""
+        print(self.text())
+        return self
+
+    def _repr_html_(self) -> str:
+        return f"<pre style='line-height:1.35'>{html.escape(self.text())}</pre>"
+
+
+def margin_text(utilisation: float | None) -> str:
+    """The margin with its sign, two decimals; in words where there is none."""
+    if utilisation is None:
+        return "not given"
+    if utilisation == 0:
+        return "no demand"
+    margin = 1 / utilisation - 1
+    if margin > 99:
+        return "over 99"
+    return f"{'+' if margin >= 0 else MINUS}{abs(math.floor(margin * 100) / 100):.2f}"
+
+
+def demand_over_capacity(check: Check, numbers: Any, actions: Any) -> Array:
+    """Utilisation at required factor 1, at every sample and place."""
+    demand, capacity = check.evaluate(numbers, actions)
+    return demand / capacity
+
+
+def worst_place(values: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+    """Largest utilisation of each sample and its flat place; NaN is never a pass.
+
+    Raises
+    ------
+    FloatingPointError : when a value is not a number
+    """
+    flat = values.reshape(*values.shape[:-2], -1)
+    index = flat.argmax(axis=-1)
+    top = np.take_along_axis(flat, index[..., None], axis=-1)[..., 0]
+    if not np.all(np.isfinite(top)):
+        raise FloatingPointError("a check gave a value that is not a finite number")
+    return top, index
+
+
+def percent(value: float) -> str:
+    """A share as a whole percentage, or with one digit below ten."""
+    shown = abs(value) * 100
+    return f"{number(shown, Dimension.NUMBER, 'si', 2 if shown < 10 else 3)} %"

@@ -1,0 +1,1 @@
+"""Which logs are allowed, and which is worst for each check."""

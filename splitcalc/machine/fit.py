@@ -1,0 +1,216 @@
+"""Do the parts fit together? Problems that only show between two inputs, each with its key."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from splitcalc.inputs import Entry, Problem
+from splitcalc.machine.document import Beam, Document, Sled
+from splitcalc.materials import STEELS
+
+PADS = ("front_pad", "rear_pad", "pad_length")
+GUIDE = ("guide_front", "guide_length")
+
+
+def pads_of(sled: Sled) -> tuple[float, float, float]:
+    """(rear, front, length) of the two pads, from the moving face back. [m]
+
+    A continuous guide counts as two pads, each a third of its length, at its ends.
+    """
+    if sled.guide == "continuous":
+        assert sled.guide_front is not None and sled.guide_length is not None
+        front, length = sled.guide_front.si, sled.guide_length.si
+        return front + length * 5 / 6, front + length / 6, length / 3
+    assert sled.rear_pad is not None and sled.front_pad is not None
+    assert sled.pad_length is not None
+    return sled.rear_pad.si, sled.front_pad.si, sled.pad_length.si
+
+
+def section_values(beam: Beam) -> dict[str, float | str]:
+    """The section's typed dimensions. [m]"""
+    return {
+        key: value.si if isinstance(value, Entry) else value
+        for key, value in vars(beam.section).items()
+    }
+
+
+def misfits(document: Document) -> list[Problem]:
+    """Everything that contradicts something else; an empty list when the machine can be used."""
+    return [
+        Problem(key, message)
+        for part in (_tools, _beam, _cylinder_and_logs, _sled)
+        for key, message in part(document)
+    ]
+
+
+Found = Iterator[tuple[str, str]]
+
+
+def _tools(doc: Document) -> Found:
+    if doc.moving_tool.kind == doc.fixed_tool.kind:
+        yield "fixed_tool.kind", f'both tools are "{doc.fixed_tool.kind}"; one must be the wedge'
+    for name, tool in (("moving_tool", doc.moving_tool), ("fixed_tool", doc.fixed_tool)):
+        low, high = tool.bottom.si, tool.bottom.si + tool.height.si
+        first = tool.contact_low or tool.bottom
+        last = tool.contact_high.si if tool.contact_high else high
+        if not low - 1e-9 <= first.si <= last <= high + 1e-9:
+            yield (
+                f"{name}.contact_low",
+                f'contact from "{first.text}" up must lie on the tool, between its lower edge '
+                f"({low:.4g} m) and its upper edge ({high:.4g} m), low below high",
+            )
+        half = tool.contact_half_width
+        if half and half.si > tool.width.si / 2 + 1e-9 and tool.kind == "push plate":
+            yield (
+                f"{name}.contact_half_width",
+                f'"{half.text}" is more than half of the width "{tool.width.text}"',
+            )
+
+
+def _beam(doc: Document) -> Found:
+    beam, tool = doc.beam, doc.fixed_tool
+    rear, front = beam.rear_end, beam.front_end
+    if not rear.si < front.si:
+        yield "beam.front_end", f'"{front.text}" must lie ahead of the rear end "{rear.text}"'
+        return
+    values = section_values(beam)
+    wrong = beam.section.misfits(values)
+    for text in wrong:
+        yield f"beam.section.{text.partition(':')[0]}", text.partition(": ")[2]
+    if not tool.weld_start.si < tool.weld_end.si:
+        yield (
+            "fixed_tool.weld_end",
+            f'"{tool.weld_end.text}" must lie ahead of weld_start "{tool.weld_start.text}"',
+        )
+    for key, entry in (
+        ("cylinder.mount_x", doc.cylinder.mount_x),
+        ("fixed_tool.edge_x", tool.edge_x),
+        ("fixed_tool.weld_start", tool.weld_start),
+        ("fixed_tool.weld_end", tool.weld_end),
+        *((f"beam.stiffeners[{i}].x", s.x) for i, s in enumerate(beam.stiffeners, 1)),
+        *((f"beam.closed_zones[{i}].start", z.start) for i, z in enumerate(beam.closed_zones, 1)),
+        *((f"beam.closed_zones[{i}].end", z.end) for i, z in enumerate(beam.closed_zones, 1)),
+    ):
+        if not rear.si - 1e-9 <= entry.si <= front.si + 1e-9:
+            yield key, f'"{entry.text}" must lie on the beam, "{rear.text}" to "{front.text}"'
+    if wrong:
+        return
+    shape = beam.section
+    section = shape.build(values)
+    for i, stiffener in enumerate(beam.stiffeners, 1):
+        if (stiffener.kind == "diaphragm") == shape.OPEN:
+            fits = "full-depth pair, part-depth pair" if shape.OPEN else "diaphragm"
+            yield (
+                f"beam.stiffeners[{i}].kind",
+                f'"{stiffener.kind}" does not suit a {shape.SHAPE} section; allowed: {fits}',
+            )
+    last = None
+    for i, zone in enumerate(beam.closed_zones, 1):
+        key = f"beam.closed_zones[{i}]"
+        if not shape.OPEN:
+            yield key, f"side plates close an open section; a {shape.SHAPE} is closed already"
+        if zone.end.si - zone.start.si < section.h:
+            yield (
+                key,
+                f'"{zone.start.text}" to "{zone.end.text}" is shorter than the section is deep '
+                f"({section.h * 1e3:.4g} mm); shorter side plates close nothing",
+            )
+        if last is not None and zone.start.si <= last:
+            yield key, "closed stretches must stand in order and apart"
+        last = zone.end.si
+    if beam.yield_strength is None:
+        try:
+            STEELS[beam.steel].yield_strength(nominal_wall(beam))
+        except ValueError as error:
+            yield "beam.steel", f"{error}; give beam.yield_strength"
+
+
+def nominal_wall(beam: Beam) -> float:
+    """The thickest wall, as the steel's tables count it. [m]"""
+    return max(
+        value
+        for key, value in section_values(beam).items()
+        if key.startswith(("t", "T")) and isinstance(value, float)
+    )
+
+
+def _cylinder_and_logs(doc: Document) -> Found:
+    cylinder, logs, beam = doc.cylinder, doc.logs, doc.beam
+    if cylinder.rod.si >= cylinder.bore.si:
+        yield "cylinder.rod", f'"{cylinder.rod.text}" must be less than the bore'
+    if logs.shortest.si > logs.longest.si:
+        yield "logs.shortest", f'"{logs.shortest.text}" is more than longest "{logs.longest.text}"'
+    if logs.smallest_diameter.si > logs.largest_diameter.si:
+        yield "logs.smallest_diameter", "it is more than largest_diameter"
+    if logs.smallest_gap.si > logs.shortest.si:
+        yield (
+            "logs.smallest_gap",
+            f'"{logs.smallest_gap.text}": the ram never reaches the shortest log '
+            f'"{logs.shortest.text}"',
+        )
+    opening = logs.smallest_gap.si + cylinder.stroke.si
+    if logs.longest.si > opening + 1e-9:
+        yield (
+            "logs.longest",
+            f'"{logs.longest.text}" is longer than the opening, which is smallest_gap + stroke = '
+            f'"{logs.smallest_gap.text}" + "{cylinder.stroke.text}"',
+        )
+    face = doc.fixed_tool.edge_x.si - opening
+    if cylinder.mount in ("rear pin", "rear flange") and face - cylinder.mount_x.si < (
+        cylinder.stroke.si
+    ):
+        yield (
+            "cylinder.stroke",
+            f'"{cylinder.stroke.text}" does not fit: drawn in, the moving face stands '
+            f"{(face - cylinder.mount_x.si) * 1e3:.0f} mm ahead of the mount, and the closed "
+            "cylinder is longer than its stroke. Move fixed_tool.edge_x forward or shorten it",
+        )
+    elif face < beam.rear_end.si:
+        yield "fixed_tool.edge_x", "drawn in, the moving face is behind the beam's rear end"
+
+
+def _sled(doc: Document) -> Found:
+    sled = doc.sled
+    if sled.guide == "rod alone":
+        yield "sled.guide", "no sled guide, the method does not apply: the rod alone bends"
+        return
+    wanted, other = (GUIDE, PADS) if sled.guide == "continuous" else (PADS, GUIDE)
+    missing = [key for key in wanted if getattr(sled, key) is None]
+    for key in missing:
+        yield f"sled.{key}", f'missing; a sled with guide = "{sled.guide}" needs it'
+    for key in other:
+        if getattr(sled, key) is not None:
+            yield f"sled.{key}", f'not used with guide = "{sled.guide}"; take it out'
+    if missing:
+        return
+    rear, front, length = pads_of(sled)
+    if rear - front < length:
+        yield (
+            f"sled.{wanted[0]}",
+            f"the pads overlap: the rear pad's middle must be at least {length * 1e3:.4g} mm "
+            "behind the front pad's",
+        )
+    edge, opening = doc.fixed_tool.edge_x.si, doc.logs.smallest_gap.si + doc.cylinder.stroke.si
+    if edge - opening - rear - length / 2 < doc.beam.rear_end.si:
+        yield (
+            f"sled.{wanted[1]}",
+            "drawn in, the rear pad hangs over the beam's rear end",
+        )
+    ahead = edge - doc.logs.smallest_gap.si - front + length / 2
+    if ahead > doc.fixed_tool.weld_start.si + 1e-9:
+        yield (
+            f"sled.{wanted[0]}",
+            f"at full stroke the front pad ends at {ahead * 1e3:.0f} mm, past the start of the "
+            f'fixed tool\'s root weld "{doc.fixed_tool.weld_start.text}"',
+        )
+    values = section_values(doc.beam)
+    if not doc.beam.section.misfits(values):
+        flange = doc.beam.section.build(values).b_f
+        for key in ("push_strip", "gib_strip"):
+            entry = getattr(sled, key)
+            if entry is not None and entry.si > flange / 2:
+                yield (
+                    f"sled.{key}",
+                    f'"{entry.text}" is off the flange, whose half width is '
+                    f"{flange / 2 * 1e3:.4g} mm",
+                )

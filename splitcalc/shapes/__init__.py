@@ -1,0 +1,1 @@
+"""What a beam section is: families, tables of published dimensions, and their properties."""

@@ -1,0 +1,1 @@
+"""What the person moves: controls, and the wiring that keeps the picture with them."""

@@ -1,0 +1,123 @@
+"""Keeps a picture with its controls: the newest values are drawn, stale ones are left out."""
+
+import asyncio
+from collections.abc import Callable, Generator, Mapping
+from threading import RLock
+from time import perf_counter
+from typing import Any
+
+from ipywidgets import ValueWidget
+
+# Changes that wait in the kernel's queue are let in before anything is drawn. Giving the loop one
+# turn (call_soon) is too little: a message takes several turns from the socket to its widget, and
+# each of 20 waiting ones was drawn. A message comes through well within this time.
+PAUSE = 0.002  # seconds
+SLICE = 0.010  # seconds of background work between two pauses
+
+_DONE = object()
+
+
+class Live:
+    """Calls `update` with the values of all `controls`, by name, after any of them changed.
+
+    Inside a running asyncio loop, as in a notebook's kernel, changes that come together lead to
+    one update with the newest values. Where no loop runs (a test, a script) each is drawn at once.
+    An update that changes a control itself is followed by another one.
+
+    An exception in `update`, or in work it hands to `run_slices`, goes to `on_error`, whose part
+    is to show it in the page: from a callback, nobody would see it.
+
+    Make it together with its controls, and `close` it before they are replaced.
+    """
+
+    def __init__(
+        self,
+        controls: Mapping[str, ValueWidget],
+        update: Callable[[dict[str, Any]], None],
+        on_error: Callable[[Exception], None],
+    ) -> None:
+        self._controls = dict(controls)
+        self._update = update
+        self._on_error = on_error
+        self._pending: object | None = None  # stands for the one change that is not drawn yet
+        self._work: Generator[object, None, None] | None = None
+        self._drawing = False
+        # JupyterLab hands a widget's changes to a thread beside the one that runs the cells.
+        self._lock = RLock()
+        for control in self._controls.values():
+            control.observe(self._changed, "value")
+
+    def draw(self) -> None:
+        """Updates now, not when the loop is free: for the first picture."""
+        self._draw(self._new_change())
+
+    def run_slices(self, work: Generator[object, None, None]) -> None:
+        """Runs slow work to its end, in place of what ran before, between the person's changes.
+
+        Inside a running loop it is resumed in slices of 10 ms, so from one yield to the next it
+        should take a few milliseconds at most; the next change of a control drops it (closes it).
+        Where no loop runs it runs to its end before this returns.
+        """
+        self._work = work
+        _soon(self._resume, work)
+
+    def close(self) -> None:
+        """Leaves the controls alone from now on; what still waits is not drawn."""
+        for control in self._controls.values():
+            control.unobserve(self._changed, "value")
+        self._pending = self._work = None
+
+    def _changed(self, _: object) -> None:
+        _soon(self._draw, self._new_change())
+
+    def _new_change(self) -> object:
+        self._work = None
+        self._pending = object()
+        return self._pending
+
+    def _draw(self, change: object) -> None:
+        with self._lock:
+            if self._drawing or change is not self._pending:
+                return  # the update in progress, or the call for a newer change, sees to it
+            self._drawing = True
+            try:
+                while self._pending is not None:
+                    self._pending = None
+                    values = {name: control.value for name, control in self._controls.items()}
+                    self._guard(self._update, values)
+            finally:
+                self._drawing = False
+
+    def _resume(self, work: Generator[object, None, None]) -> None:
+        with self._lock:
+            self._guard(self._advance, work)
+
+    def _advance(self, work: Generator[object, None, None]) -> None:
+        end = perf_counter() + SLICE
+        while work is self._work and next(work, _DONE) is not _DONE:
+            if _running_loop() and perf_counter() >= end:
+                _soon(self._resume, work)
+                return
+        work.close()
+
+    def _guard(self, action: Callable[..., None], *arguments: object) -> None:
+        try:
+            action(*arguments)
+        except Exception as error:  # of any kind: unseen, it would leave a stale picture
+            self._on_error(error)
+
+
+def _running_loop() -> asyncio.AbstractEventLoop | None:
+    try:
+        return asyncio.get_running_loop()
+    except RuntimeError:
+        return None
+
+
+def _soon(call: Callable[..., None], *arguments: object) -> None:
+    """Calls when the loop has let in what waits; at once where no loop runs."""
+    loop = _running_loop()
+    if loop is None:
+        call(*arguments)
+    else:
+        loop.call_later(PAUSE, call, *arguments)
