@@ -1,0 +1,132 @@
+"""The few commands. Exit 0 all hold, 1 something doesn't, 2 the input can't be used."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import sys
+import textwrap
+from pathlib import Path
+from typing import Any
+
+from splitcalc import __version__
+from splitcalc.cautions import CAUTIONS, NOT_COVERED
+from splitcalc.inputs import InputError
+
+WIDTH = 100
+
+
+def _check(args: argparse.Namespace) -> int:
+    from splitcalc.checks import ALL, NOT_YET
+    from splitcalc.logs.report import findings, governing
+    from splitcalc.logs.words import sentence, table
+    from splitcalc.machine.file import load
+
+    machine = load(args.file)
+    results = findings(ALL, machine.numbers(), machine.units)
+    passed = all(f.holds for f in results)
+    if args.json:
+        worst = governing(results)
+        report = {
+            "machine": _about(machine),
+            "passed": passed,
+            "governing": worst and {"id": worst.check.id, "set": worst.set},
+            "assumptions": machine.assumptions(),
+            "not_covered": list(NOT_COVERED),
+            "not_yet_checked": list(NOT_YET),
+            "cautions": CAUTIONS,
+            "findings": [f.as_dict() for f in results],
+        }
+        print(json.dumps(report, indent=1, ensure_ascii=False, allow_nan=False))
+    else:
+        print(_wrapped(f"{machine.title}. {sentence(results, NOT_YET)}"))
+        print()
+        print("\n".join(table(results)))
+        print()
+        print(_wrapped(f"Not covered: {'; '.join(NOT_COVERED)}."))
+        print()
+        print(_wrapped(CAUTIONS))
+    return 0 if passed else 1
+
+
+def _about(machine: Any) -> dict[str, str]:
+    job = machine.document.job
+    return {
+        "title": job.title,
+        "number": job.number,
+        "revision": job.revision,
+        "section": machine.section_name,
+        "steel": machine.document.beam.steel,
+        "design_basis": machine.document.basis.design,
+        "sha256": machine.digest,
+        "made_with": f"splitcalc {__version__}",
+    }
+
+
+def _wrapped(text: str) -> str:
+    return textwrap.fill(text, WIDTH, break_on_hyphens=False)
+
+
+def _open(args: argparse.Namespace) -> int:
+    from splitcalc.opening import prepare, run_lab
+
+    folder = prepare(args.folder)
+    print(f"worksheets in {folder}" + ("" if args.folder else " (a copy of the invented demo)"))
+    print(_wrapped(CAUTIONS))
+    return run_lab(folder, args.server)
+
+
+def parser() -> argparse.ArgumentParser:
+    out = argparse.ArgumentParser(
+        prog="splitcalc",
+        description="Strength calculation of hydraulic log splitters.",
+        epilog=CAUTIONS,
+    )
+    out.add_argument("--version", action="version", version=f"splitcalc {__version__}")
+    commands = out.add_subparsers(dest="command", required=True, metavar="COMMAND")
+
+    check = commands.add_parser(
+        "check",
+        help="all findings over all allowed logs",
+        description="All findings over all allowed logs. Exit 0: all hold. 1: something doesn't "
+        "hold or can't be given. 2: the file can't be used.",
+    )
+    check.add_argument("file", type=Path, help="machine file (TOML)")
+    check.add_argument("--json", action="store_true", help="one JSON object, SI numbers")
+    check.set_defaults(run=_check)
+
+    open_ = commands.add_parser(
+        "open",
+        help="JupyterLab with the worksheets",
+        description="JupyterLab with the worksheets. Without a folder: on a copy of the invented "
+        "demo machine. What follows -- goes to the Jupyter server, such as --no-browser.",
+    )
+    open_.add_argument("folder", type=Path, nargs="?", help="folder with your machine.toml")
+    open_.set_defaults(run=_open)
+    return out
+
+
+def main(argv: list[str] | None = None) -> int:
+    words = sys.argv[1:] if argv is None else argv
+    words, server = _split(words)
+    args = parser().parse_args(words)
+    args.server = server
+    try:
+        return int(args.run(args))
+    except InputError as error:
+        print(f"splitcalc: {error}", file=sys.stderr)
+    except OSError as error:
+        print(f"splitcalc: {error.filename or args.command}: {error.strerror}", file=sys.stderr)
+    return 2
+
+
+def _split(words: list[str]) -> tuple[list[str], list[str]]:
+    """What stands before `--`, and what follows it."""
+    if "--" not in words:
+        return words, []
+    at = words.index("--")
+    return words[:at], words[at + 1 :]
+
+
+if __name__ == "__main__":
+    raise SystemExit(main())

@@ -1,0 +1,92 @@
+"""Findings in words: the log, the one sentence, the table."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from typing import Any
+
+from splitcalc.findings import Finding, margin_text
+from splitcalc.logs.report import governing
+from splitcalc.units import Dimension, number, show
+
+LEVEL = 0.005  # slopes below this read as straight
+
+
+def lean(log: Mapping[str, Any]) -> str:
+    """Which way the thrust leans, seen from the rear mount, and how steeply."""
+    up = (log["b_z_m"] - log["a_z_m"]) / log["distance_m"]
+    left = (log["b_y_m"] - log["a_y_m"]) / log["distance_m"]
+    ways = [
+        name
+        for value, names in ((left, ("left", "right")), (up, ("up", "down")))
+        for name in names[value < 0 :][:1]
+        if abs(value) > LEVEL
+    ]
+    if not ways:
+        return "straight"
+    return f"leaning {' and '.join(ways)} at {(up**2 + left**2) ** 0.5:.2f}"
+
+
+def log_words(log: Mapping[str, Any], units: Any) -> str:
+    return f"{log['state']}, {show(log['distance_m'], Dimension.LENGTH, units, 3)}, {lean(log)}"
+
+
+def shortfall(utilisation: float) -> str:
+    """How far a check holds or falls short, in words."""
+    if utilisation == 0:
+        return "has no demand"
+    percent = abs(utilisation - 1) * 100
+    amount = f"{percent:.1f}" if percent < 10 else f"{percent:.0f}"
+    return f"is {amount} % {'over' if utilisation > 1 else 'under'} its limit"
+
+
+def sentence(results: Sequence[Finding], not_yet: Sequence[str]) -> str:
+    """What governs, where, under which log, by how much, and what is not yet checked."""
+    worst = governing(results)
+    if worst is None:
+        return "Nothing was checked."
+    units = worst.units
+    if not worst.given or worst.utilisation is None or worst.x is None or worst.log is None:
+        head = f"{worst.check.title} can't be given: {worst.why}."
+    else:
+        short = [f for f in results if not f.holds]
+        verdict = (
+            "All that was checked holds"
+            if not short
+            else f"{len(short)} of {sum(f.applies for f in results)} findings fall short"
+        )
+        head = (
+            f"{verdict}: {worst.check.title} governs ({worst.set} logs) and "
+            f"{shortfall(worst.utilisation)}, at x = {show(worst.x, Dimension.LENGTH, units, 3)}, "
+            f"{worst.place}, for the log {log_words(worst.log, units)}."
+        )
+    return f"{head} Not yet checked: {'; '.join(not_yet)}."
+
+
+def table(results: Sequence[Finding]) -> list[str]:
+    """The findings as lines of text, at most 100 columns."""
+    layout = "{:<22} {:<8} {:>10} {:>10} {:>6} {:>6} {:>9}  {}"
+    lines = [
+        layout.format("check", "logs", "demand", "limit", "factor", "util.", "margin", "where, log")
+    ]
+    for f in results:
+        u = f.utilisation
+        if u is None or f.log is None or f.x is None:
+            word = "does not apply" if not f.applies else "NOT GIVEN"
+            lines.append(f"{f.check.title:<22} {f.set:<8} {word}: {f.why}"[:100])
+            continue
+        kind = f.check.dimension
+        where = show(f.x, Dimension.LENGTH, f.units, 3)
+        lines.append(
+            layout.format(
+                f.check.title,
+                f.set,
+                show(f.demand, kind, f.units, 3),
+                show(f.capacity, kind, f.units, 3),
+                number(f.required_factor, Dimension.NUMBER, f.units, 3),
+                f"{u:.2f}",
+                margin_text(u),
+                f"{where}, {f.log['state']}",
+            )
+        )
+    return lines
