@@ -129,12 +129,11 @@ class Finding:
             return f"{head}: does not apply, {self.why}"
         if not self.given or self.demand is None or self.capacity is None:
             return f"{head}: NOT GIVEN, {self.why}"
-        assert self.x is not None and self.required_factor is not None
         kind = self.check.dimension
         return (
             f"{head} at x = {show(self.x, Dimension.LENGTH, self.units)}, {self.place}: "
             f"{show(self.demand, kind, self.units)} against "
-            f"{show(self.capacity, kind, self.units)} / {self.required_factor:g}, "
+            f"{show(self.capacity, kind, self.units)} / {number(self.required_factor, Dimension.NUMBER, self.units)}, "
             f"margin {margin_text(self.utilisation)}"
         )
 

@@ -162,6 +162,10 @@ def _nearest(word: str, known: tuple[str, ...]) -> str:
     return f' - did you mean "{close[0]}"?' if close else ""
 
 
+def _read_field(fact: Fact, value: Any, _: Any) -> Any:
+    return read_value(value, fact)
+
+
 @functools.cache
 def converter() -> Any:
     """cattrs, told how our fields are read. Imported here: reading is its only use."""
@@ -171,19 +175,13 @@ def converter() -> Any:
     out = cattrs.Converter(forbid_extra_keys=True, detailed_validation=True)
 
     def hook(cls: Any, conv: Any) -> Any:
-        own = {}
-        for item in dataclasses.fields(cls):
-            fact = fact_of(item)
-            if fact is not None:
-                own[item.name] = override(
-                    struct_hook=lambda value, _, fact=fact: read_value(value, fact)
-                )
+        own: Any = {
+            item.name: override(struct_hook=functools.partial(_read_field, fact))
+            for item in dataclasses.fields(cls)
+            if (fact := fact_of(item)) is not None
+        }
         structure = make_dict_structure_fn(
-            cls,
-            conv,
-            _cattrs_forbid_extra_keys=True,
-            _cattrs_detailed_validation=True,
-            **own,
+            cls, conv, _cattrs_forbid_extra_keys=True, _cattrs_detailed_validation=True, **own
         )
 
         def checked(value: Any, kind: Any) -> Any:

@@ -22,6 +22,5 @@ def test_wheel_carries_package_worksheets_and_tables_and_nothing_ignored(
         if path.startswith("worksheets/") and path.endswith((".ipynb", ".toml"))
     }
     assert carried == package | worksheets
-    tables = {path for path in carried if path.startswith("splitcalc/shapes/tables/")}
-    assert {Path(path).suffix for path in tables} == {".csv"}
+    assert any(Path(path).match("splitcalc/shapes/tables/*.csv") for path in carried)
     assert {"main-beam.ipynb", "machine.toml"} <= {Path(path).name for path in worksheets}

@@ -16,8 +16,8 @@ CSS_DPI = 96  # a css pixel is 1/96 inch, so a font of 9 points has the size it 
 class Canvas:
     """A picture of `width` by `height` css pixels, drawn with `scale` pixels along each of them.
 
-    Twice the scale is sharper on a dense screen only and takes nearly three times as long, most
-    of it for the PNG; so a picture that follows the hand has 1.
+    A scale of 2 is sharper on a dense screen only and takes two to three times as long, most of it
+    for the PNG; so a picture that follows the hand has 1.
 
     Draw on `figure` whatever stands still, hand what moves to `moving`, then alternate between
     setting the data of what moves and `render`. Axis limits belong to what stands still.

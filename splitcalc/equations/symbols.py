@@ -7,7 +7,9 @@ from __future__ import annotations
 
 from typing import NamedTuple
 
-from splitcalc.units import Dimension as D
+from splitcalc.units import Dimension
+
+D = Dimension
 
 
 class Symbol(NamedTuple):

@@ -9,18 +9,26 @@ from typing import Any
 import numpy as np
 
 from splitcalc.equations import Line, recording
-from splitcalc.findings import Check, Finding, demand_over_capacity, worst_place
+from splitcalc.findings import Check, Finding, worst_place
 from splitcalc.logs.allowed import bounds_met
-from splitcalc.logs.search import log_of, search
+from splitcalc.logs.search import Spot, log_of, search
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.thrust.frame import Log, frame_of, stations
-from splitcalc.thrust.statics import actions
+from splitcalc.thrust.statics import Actions, actions
 
 PER_STRETCH = 12  # stations of a finding: some 250 on a plain beam
 
 
-def find(check: Check, numbers: Numbers, log: Log, units: Any = "si", **about: str) -> Finding:
-    """The finding of one check for one log: its worst place, ready to be replayed with scalars.
+def acting_on(numbers: Numbers, log: Log) -> Actions:
+    """The actions of one log at the stations of a finding."""
+    frame = frame_of(numbers, log)
+    return actions(frame, stations(numbers, frame, PER_STRETCH))
+
+
+def find(
+    check: Check, numbers: Numbers, acting: Actions, units: Any = "si", **about: str
+) -> Finding:
+    """The finding of one check under the actions of one log: its worst place.
 
     Parameters
     ----------
@@ -30,27 +38,26 @@ def find(check: Check, numbers: Numbers, log: Log, units: Any = "si", **about: s
     does, why = check.applies(numbers)
     if not does:
         return Finding(check, set_name, applies=False, why=why, units=units)
-    frame = frame_of(numbers, log)
-    x = stations(numbers, frame, PER_STRETCH)
-    values = demand_over_capacity(check, numbers, actions(frame, x))
-    station, point = np.unravel_index(int(worst_place(values)[1]), values.shape[-2:])
-    place = float(x[station, 0])
-    alone = numbers.at_point(int(point)) if values.shape[-1] > 1 else numbers
-
-    def once() -> tuple[Any, Any]:
-        return check.evaluate(alone, actions(frame_of(numbers, log), place))
+    demand, capacity = check.evaluate(numbers, acting)
+    demand, capacity = np.broadcast_arrays(demand, capacity)
+    try:
+        _, index = worst_place(demand / capacity)
+    except FloatingPointError as error:
+        return Finding(check, set_name, given=False, why=str(error), units=units)
+    station, point = np.unravel_index(int(index), demand.shape)
+    place, log = float(acting.x[station, 0]), acting.frame.log
+    alone = numbers.at_point(int(point)) if demand.shape[-1] > 1 else numbers
 
     def replay() -> list[Line]:
         with recording() as lines:
-            once()
-        return lines
+            check.evaluate(alone, actions(frame_of(numbers, log), place))
+        return [*numbers.lines, *lines]
 
-    demand, capacity = once()
     return Finding(
         check,
         set_name,
-        demand=float(demand),
-        capacity=float(capacity),
+        demand=float(demand[station, point]),
+        capacity=float(capacity[station, point]),
         required_factor=float(numbers.yield_factors[set_name]),
         x=place,
         place=check.place(numbers, int(point)),
@@ -71,20 +78,31 @@ def find(check: Check, numbers: Numbers, log: Log, units: Any = "si", **about: s
 
 def findings(checks: Sequence[Check], numbers: Numbers, units: Any = "si") -> list[Finding]:
     """Every check's finding for each set, at its worst allowed log."""
-    active = [check for check in checks if check.applies(numbers)[0]]
-    best = search(active, numbers)
+    best = _worst(checks, numbers)
     out = []
     for check, set_name in product(checks, SETS):
         spot = best.get((check.id, set_name))
         if spot is None:
-            why = check.applies(numbers)[1]
-            out.append(Finding(check, set_name, applies=False, why=why, units=units))
+            does, why = check.applies(numbers)
+            why = why or "a number in it is not finite"
+            out.append(Finding(check, set_name, applies=does, given=not does, why=why, units=units))
             continue
         log = log_of(numbers, spot)
         bound = bounds_met(numbers, set_name, spot.state, log)
         about = {"set": set_name, "state": spot.state, "bound": bound}
-        out.append(find(check, numbers, log, units, **about))
+        out.append(find(check, numbers, acting_on(numbers, log), units, **about))
     return out
+
+
+def _worst(checks: Sequence[Check], numbers: Numbers) -> dict[tuple[str, str], Spot]:
+    """The search; a check that gives no finite number spoils only its own finding."""
+    active = [check for check in checks if check.applies(numbers)[0]]
+    try:
+        return search(active, numbers)
+    except FloatingPointError:
+        if len(checks) == 1:
+            return {}
+        return {key: spot for c in active for key, spot in _worst([c], numbers).items()}
 
 
 def governing(results: Sequence[Finding]) -> Finding | None:

@@ -18,12 +18,10 @@ def pads_of(sled: Sled) -> tuple[float, float, float]:
     A continuous guide counts as two pads, each a third of its length, at its ends.
     """
     if sled.guide == "continuous":
-        assert sled.guide_front is not None and sled.guide_length is not None
-        front, length = sled.guide_front.si, sled.guide_length.si
+        front, length = (getattr(sled, key).si for key in GUIDE)
         return front + length * 5 / 6, front + length / 6, length / 3
-    assert sled.rear_pad is not None and sled.front_pad is not None
-    assert sled.pad_length is not None
-    return sled.rear_pad.si, sled.front_pad.si, sled.pad_length.si
+    front, rear, length = (getattr(sled, key).si for key in PADS)
+    return rear, front, length
 
 
 def section_values(beam: Beam) -> dict[str, float | str]:

@@ -13,7 +13,7 @@ from typing import Any
 import numpy as np
 from numpy import maximum, pi
 
-from splitcalc.equations import equation
+from splitcalc.equations import Line, equation, recording
 from splitcalc.inputs import Entry, walk
 from splitcalc.machine.document import GRIPS, Document, FixedTool, Tool
 from splitcalc.machine.fit import nominal_wall, pads_of, section_values
@@ -96,6 +96,7 @@ class Numbers:
     diaphragms: tuple[float, ...]
     closed_zones: tuple[tuple[float, float], ...]
     yield_factors: Mapping[str, Array]
+    lines: tuple[Line, ...] = ()  # the equations that made these numbers
 
     def at_point(self, index: int) -> Numbers:
         """The same machine with one stress point, for replaying."""
@@ -109,6 +110,12 @@ def numbers_of(document: Document, overrides: Overrides | None = None) -> Number
     ------
     KeyError : for a key that is not a number of the document
     """
+    with recording() as lines:
+        numbers = _numbers(document, overrides)
+    return replace(numbers, lines=tuple(lines))
+
+
+def _numbers(document: Document, overrides: Overrides | None) -> Numbers:
     overrides = dict(overrides or {})
     known = {key: value for key, fact, value in walk(document) if fact.dimension is not None}
     for key in overrides:

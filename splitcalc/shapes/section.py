@@ -123,7 +123,9 @@ def assemble(
     First moments are scaled by exact over mid-line inertia, so that the shear flow carries the
     whole of the shear force.
     """
-    rows = {name: [] for name in ("y", "z", "t", "omega", "Q_y", "Q_z", "Q_w", "psi")}
+    rows: dict[str, list[Array]] = {
+        name: [] for name in ("y", "z", "t", "omega", "Q_y", "Q_z", "Q_w", "psi")
+    }
     for spot in spots:
         first, last = ends[spot.wall]
         rows["y"].append(spot.y)

@@ -1,6 +1,7 @@
 """Keeps a picture with its controls: the newest values are drawn, stale ones are left out."""
 
 import asyncio
+import math
 from collections.abc import Callable, Generator, Mapping
 from threading import RLock
 from time import perf_counter
@@ -49,7 +50,8 @@ class Live:
 
     def draw(self) -> None:
         """Updates now, not when the loop is free: for the first picture."""
-        self._draw(self._new_change())
+        self._mark_change()
+        self._draw_pending()
 
     def run_slices(self, work: Generator[object, None, None]) -> None:
         """Runs slow work to its end, in place of what ran before, between the person's changes.
@@ -58,8 +60,9 @@ class Live:
         should take a few milliseconds at most; the next change of a control drops it (closes it).
         Where no loop runs it runs to its end before this returns.
         """
-        self._work = work
-        _soon(self._resume, work)
+        # An update that changed a control hands over work that is stale already.
+        self._work = work if self._pending is None else None
+        self._resume_soon(work)
 
     def close(self) -> None:
         """Leaves the controls alone from now on; what still waits is not drawn."""
@@ -68,17 +71,26 @@ class Live:
         self._pending = self._work = None
 
     def _changed(self, _: object) -> None:
-        _soon(self._draw, self._new_change())
+        change = self._mark_change()
+        loop = _running_loop()
+        if loop is None:
+            self._draw_pending()
+        else:
+            loop.call_later(PAUSE, self._draw_if_newest, change)
 
-    def _new_change(self) -> object:
+    def _mark_change(self) -> object:
         self._work = None
-        self._pending = object()
-        return self._pending
+        self._pending = change = object()
+        return change
 
-    def _draw(self, change: object) -> None:
+    def _draw_if_newest(self, change: object) -> None:
+        if change is self._pending:
+            self._draw_pending()
+
+    def _draw_pending(self) -> None:
         with self._lock:
-            if self._drawing or change is not self._pending:
-                return  # the update in progress, or the call for a newer change, sees to it
+            if self._drawing:
+                return  # called from within an update, after which the loop below goes on
             self._drawing = True
             try:
                 while self._pending is not None:
@@ -88,15 +100,22 @@ class Live:
             finally:
                 self._drawing = False
 
+    def _resume_soon(self, work: Generator[object, None, None]) -> None:
+        loop = _running_loop()
+        if loop is None:
+            self._resume(work)
+        else:
+            loop.call_later(PAUSE, self._resume, work)
+
     def _resume(self, work: Generator[object, None, None]) -> None:
         with self._lock:
             self._guard(self._advance, work)
 
     def _advance(self, work: Generator[object, None, None]) -> None:
-        end = perf_counter() + SLICE
+        end = perf_counter() + SLICE if _running_loop() else math.inf
         while work is self._work and next(work, _DONE) is not _DONE:
-            if _running_loop() and perf_counter() >= end:
-                _soon(self._resume, work)
+            if perf_counter() >= end:
+                self._resume_soon(work)
                 return
         work.close()
 
@@ -112,12 +131,3 @@ def _running_loop() -> asyncio.AbstractEventLoop | None:
         return asyncio.get_running_loop()
     except RuntimeError:
         return None
-
-
-def _soon(call: Callable[..., None], *arguments: object) -> None:
-    """Calls when the loop has let in what waits; at once where no loop runs."""
-    loop = _running_loop()
-    if loop is None:
-        call(*arguments)
-    else:
-        loop.call_later(PAUSE, call, *arguments)

@@ -193,6 +193,17 @@ def point_stresses(numbers: Numbers, actions: Actions) -> list[tuple[Array, Arra
     return out
 
 
+def signed_stresses(numbers: Numbers, actions: Actions) -> Array:
+    """Normal stress with its sign, without allowances, the larger bound. [Pa], for pictures."""
+    section, points = numbers.section, numbers.section.points
+    if not section.open:
+        return bending_stress(y=points.y, z=points.z, **_bending(numbers, actions))
+    first, *others = (sigma for sigma, _ in point_stresses(numbers, actions))
+    for sigma in others:
+        first = np.where(abs(sigma) > abs(first), sigma, first)
+    return first
+
+
 def equivalent_stress(numbers: Numbers, actions: Actions) -> Array:
     """Von Mises stress at stations and points, the worse bound. [Pa], `samples + (n, p)`."""
     worst: Array = None
