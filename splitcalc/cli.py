@@ -19,7 +19,7 @@ WIDTH = 100
 def _check(args: argparse.Namespace) -> int:
     from splitcalc.checks import ALL, NOT_YET
     from splitcalc.logs.report import findings, governing
-    from splitcalc.logs.words import sentence, table
+    from splitcalc.logs.words import sentence, still_open, table
     from splitcalc.machine.file import load
 
     machine = load(args.file)
@@ -39,7 +39,7 @@ def _check(args: argparse.Namespace) -> int:
         }
         print(json.dumps(report, indent=1, ensure_ascii=False, allow_nan=False))
     else:
-        print(_wrapped(f"{machine.title}. {sentence(results, NOT_YET)}"))
+        print(_wrapped(f"{machine.title}. {sentence(results)} {still_open(NOT_YET)}"))
         print()
         print("\n".join(table(results)))
         print()

@@ -130,10 +130,11 @@ class Finding:
         if not self.given or self.demand is None or self.capacity is None:
             return f"{head}: NOT GIVEN, {self.why}"
         kind = self.check.dimension
+        factor = number(self.required_factor, Dimension.NUMBER, self.units)
         return (
             f"{head} at x = {show(self.x, Dimension.LENGTH, self.units)}, {self.place}: "
             f"{show(self.demand, kind, self.units)} against "
-            f"{show(self.capacity, kind, self.units)} / {number(self.required_factor, Dimension.NUMBER, self.units)}, "
+            f"{show(self.capacity, kind, self.units)} / {factor}, "
             f"margin {margin_text(self.utilisation)}"
         )
 

@@ -20,7 +20,7 @@ from splitcalc.machine.numbers import Numbers
 from splitcalc.thrust.frame import frame_of
 from splitcalc.units import Dimension, factor, number, unit_text
 
-WIDTH, HEIGHT = 900, 560
+WIDTH, HEIGHT = 840, 480  # beside JupyterLab's folder list on a 1280 px screen
 FONT = 9
 
 
@@ -102,7 +102,7 @@ class MainBeamPicture:
             names.append(("web, bent across (no sign)", palette.WEB[0]))
         for k, (name, color) in enumerate(names):
             axes.text(
-                0.002 + 0.14 * k, 1.03, name, color=color, transform=axes.transAxes,
+                0.002 + 0.15 * k, 1.03, name, color=color, transform=axes.transAxes,
                 fontsize=FONT, fontweight="bold",
             )  # fmt: skip
         styles = {**palette.CORNERS, "web": palette.WEB}

@@ -40,27 +40,26 @@ def shortfall(utilisation: float) -> str:
     return f"is {amount} % {'over' if utilisation > 1 else 'under'} its limit"
 
 
-def sentence(results: Sequence[Finding], not_yet: Sequence[str]) -> str:
-    """What governs, where, under which log, by how much, and what is not yet checked."""
+def sentence(results: Sequence[Finding]) -> str:
+    """What governs, where, in which set, under which log, by how much."""
     worst = governing(results)
     if worst is None:
         return "Nothing was checked."
     units = worst.units
     if not worst.given or worst.utilisation is None or worst.x is None or worst.log is None:
-        head = f"{worst.check.title} can't be given: {worst.why}."
-    else:
-        short = [f for f in results if not f.holds]
-        verdict = (
-            "All that was checked holds"
-            if not short
-            else f"{len(short)} of {sum(f.applies for f in results)} findings fall short"
-        )
-        head = (
-            f"{verdict}: {worst.check.title} governs ({worst.set} logs) and "
-            f"{shortfall(worst.utilisation)}, at x = {show(worst.x, Dimension.LENGTH, units, 3)}, "
-            f"{worst.place}, for the log {log_words(worst.log, units)}."
-        )
-    return f"{head} Not yet checked: {'; '.join(not_yet)}."
+        return f"{worst.check.title} can't be given: {worst.why}."
+    short = sum(not f.holds for f in results)
+    count = sum(f.applies for f in results)
+    verdict = f"{short} of {count} findings fall short" if short else "All that was checked holds"
+    return (
+        f"{verdict}: {worst.check.title} governs ({worst.set} logs) and "
+        f"{shortfall(worst.utilisation)}, at x = {show(worst.x, Dimension.LENGTH, units, 3)}, "
+        f"{worst.place}, for the log {log_words(worst.log, units)}."
+    )
+
+
+def still_open(not_yet: Sequence[str]) -> str:
+    return f"Not yet checked: {'; '.join(not_yet)}."
 
 
 def table(results: Sequence[Finding]) -> list[str]:

@@ -2,7 +2,7 @@
 
 from ipywidgets import FloatSlider, Layout
 
-LABEL_CHARACTERS = 32  # of label and unit together
+LABEL_CHARACTERS = 22  # of label and unit together
 READOUT_CHARACTERS = 9  # what the widget has room for
 
 
@@ -42,5 +42,5 @@ def slider(
         continuous_update=True,
         # The zero is wider than the average letter, so so many characters fit.
         style={"description_width": f"{LABEL_CHARACTERS}ch"},
-        layout=Layout(width="42em"),
+        layout=Layout(width="100%"),
     )

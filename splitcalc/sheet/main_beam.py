@@ -14,7 +14,7 @@ from splitcalc.draw.main_beam import HEIGHT, WIDTH, MainBeamPicture
 from splitcalc.findings import Finding, margin_text
 from splitcalc.logs.present import OUTSIDE, Present, log_by_ram, present
 from splitcalc.logs.report import findings, governing
-from splitcalc.logs.words import log_words, sentence, shortfall
+from splitcalc.logs.words import log_words, sentence, shortfall, still_open
 from splitcalc.machine.file import Machine
 from splitcalc.machine.numbers import Numbers
 from splitcalc.sheet.controls import slider
@@ -40,7 +40,7 @@ class MainBeam:
             format="png", width=WIDTH, height=HEIGHT,
             layout=Layout(width=f"{WIDTH}px", height=f"{HEIGHT}px", flex="0 0 auto"),
         )  # fmt: skip
-        self.sentence = HTML(layout=Layout(width=f"{WIDTH}px", min_height="6.2em"))
+        self.sentence = HTML(layout=Layout(width=f"{WIDTH}px", min_height="7.2em"))
         self.values = HTML(layout=Layout(width=f"{WIDTH}px"))
         self.live = Live(self.controls, self._update, self._show_error)
         self.live.draw()
@@ -49,7 +49,7 @@ class MainBeam:
                 HTML(STYLE),
                 GridBox(
                     list(self.controls.values()),
-                    layout=Layout(grid_template_columns="repeat(2, 450px)"),
+                    layout=Layout(grid_template_columns=f"repeat(2, {WIDTH // 2}px)"),
                 ),
                 self.sentence,
                 self.image,
@@ -120,11 +120,12 @@ class MainBeam:
         where = show(worst.x, Dimension.LENGTH, self.units, 3)
         kind = f"{log_words(worst.log, self.units)}"
         if now.set == OUTSIDE:
-            kind += "; <b>no set allows this log</b>, it is judged as an extreme one"
+            kind += "; <b>not an allowed log</b>, judged as an extreme one"
         return (
             f"<b>This log</b> ({kind}): {html.escape(worst.check.title)} governs and "
             f"{shortfall(worst.utilisation)}, at x = {where}. "
-            f"<b>All allowed logs</b>: {html.escape(sentence(self.worst, NOT_YET))}"
+            f"<b>All allowed logs</b>: {html.escape(sentence(self.worst))}"
+            f"{_small(still_open(NOT_YET))}"
         )
 
     def _show_error(self, error: Exception) -> None:
