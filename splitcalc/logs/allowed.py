@@ -16,8 +16,9 @@ ones, where the rectangle changes its sides.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from itertools import product
-from typing import Any, NamedTuple
+from typing import NamedTuple
 
 import numpy as np
 
@@ -25,21 +26,20 @@ from splitcalc.machine.numbers import Contact, Numbers
 from splitcalc.thrust.frame import Log
 
 STATES = ("first bite", "buried")
+OFFSETS = ("a_y", "a_z", "b_y", "b_z")
 SHARE = {"usual": 0.5, "extreme": 1.0}  # of each contact range and of the grip
 
-CRITICAL = 16  # turns at which the rectangle on the circle changes its sides
 BOX = tuple(product((0, 1), repeat=4))  # low or high of a_y, a_z, b_y, b_z
 CORNERS = tuple(product((0, 1), repeat=2))  # low or high of a_y, a_z
 
 
 class Range(NamedTuple):
-    """Bounds of the offsets at some distances. [m]; arrays of one shape, and the slope's limit."""
+    """Bounds at some distances: low and high of each offset in the order of `OFFSETS`, shape
+    (4, 2) + distances [m]; the limit of the slope; the distances themselves [m]."""
 
-    a_y: tuple[np.ndarray, np.ndarray]
-    a_z: tuple[np.ndarray, np.ndarray]
-    b_y: tuple[np.ndarray, np.ndarray]
-    b_z: tuple[np.ndarray, np.ndarray]
+    ends: np.ndarray
     slope: np.ndarray
+    distance: np.ndarray
 
 
 def distances(numbers: Numbers, state: str) -> tuple[float, float]:
@@ -57,38 +57,41 @@ def allowed(numbers: Numbers, set_name: str, state: str, distance: np.ndarray) -
         wedge = Contact(numbers.t_wedge / 2 + aside, numbers.wedge.low, numbers.wedge.high)
         moving, fixed = (wedge, fixed) if numbers.wedge_moves else (moving, wedge)
     share = SHARE[set_name]
-
-    def around(low: Any, high: Any) -> tuple[np.ndarray, np.ndarray]:
+    ends = np.empty((4, 2, *distance.shape))
+    for k, (low, high) in enumerate(
+        (
+            (-moving.half_width, moving.half_width),
+            (moving.low, moving.high),
+            (-fixed.half_width, fixed.half_width),
+            (fixed.low, fixed.high),
+        )
+    ):
         middle, half = (low + high) / 2, share * (high - low) / 2
-        full = np.zeros_like(distance)
-        return full + middle - half, full + middle + half
-
-    return Range(
-        around(-moving.half_width, moving.half_width),
-        around(moving.low, moving.high),
-        around(-fixed.half_width, fixed.half_width),
-        around(fixed.low, fixed.high),
-        share * numbers.grip + np.zeros_like(distance),
-    )
+        ends[k, 0], ends[k, 1] = middle - half, middle + half
+    return Range(ends, np.full(distance.shape, share * numbers.grip), distance)
 
 
-def critical_turns(bounds: Range, distance: np.ndarray) -> np.ndarray:
-    """The t at which a contact reaches a corner of its range, shape `distances + (16,)`."""
-    radius = bounds.slope * distance
-
-    def gaps(a: Any, b: Any) -> list[np.ndarray]:
-        return [(b[i] - a[j]) / radius for i, j in product((0, 1), repeat=2)]
-
-    across = [np.arccos(np.clip(g, -1, 1)) for g in gaps(bounds.a_y, bounds.b_y)]
-    up = [np.arcsin(np.clip(g, -1, 1)) for g in gaps(bounds.a_z, bounds.b_z)]
-    turns = [t for c in across for t in (c, -c)] + [t for s in up for t in (s, np.pi - s)]
-    return np.stack(turns, axis=-1)
+def joined(ranges: Sequence[Range]) -> Range:
+    """Ranges behind one another."""
+    return Range(*(np.concatenate(parts, axis=-1) for parts in zip(*ranges, strict=True)))
 
 
-def candidates(
-    bounds: Range, distance: np.ndarray, turns: np.ndarray
-) -> tuple[np.ndarray, np.ndarray]:
-    """Offsets (a_y, a_z, b_y, b_z) of every slot, and whether the log is allowed.
+def critical_turns(bounds: Range) -> np.ndarray:
+    """The t at which a contact reaches a corner of its range, shape `distances + (16,)`.
+
+    NaN where the circle doesn't get there.
+    """
+    a, b = bounds.ends[:2], bounds.ends[2:]
+    # y or z, low or high of b, low or high of a
+    gaps = (b[:, :, None] - a[:, None]) / (bounds.slope * bounds.distance)
+    with np.errstate(invalid="ignore"):
+        across, up = np.arccos(gaps[0]), np.arcsin(gaps[1])
+    turns = np.concatenate([across, -across, up, np.pi - up])
+    return np.moveaxis(turns.reshape(16, *bounds.distance.shape), 0, -1)
+
+
+def candidates(bounds: Range, turns: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+    """Offsets of every slot in the order of `OFFSETS`, and whether the log is allowed.
 
     Parameters
     ----------
@@ -98,33 +101,32 @@ def candidates(
     -------
     offsets : shape (4,) + distances + (16 + 4 * turns,); valid : the same without the 4
     """
-    box = np.stack(
-        [
-            np.stack([side[corner[k]] for corner in BOX], axis=-1)
-            for k, side in enumerate((bounds.a_y, bounds.a_z, bounds.b_y, bounds.b_z))
-        ]
-    )
-    radius = (bounds.slope * distance)[..., None]
+    box = np.moveaxis(bounds.ends[np.arange(4)[:, None], np.transpose(BOX)], 1, -1)
+    radius = (bounds.slope * bounds.distance)[..., None]
     box_valid = np.hypot(box[2] - box[0], box[3] - box[1]) <= radius * (1 + 1e-12)
-    step_y, step_z = radius * np.cos(turns), radius * np.sin(turns)
-    sides, open_sides = [], []
-    for a, b, step in (
-        (bounds.a_y, bounds.b_y, step_y),
-        (bounds.a_z, bounds.b_z, step_z),
-    ):
-        low = np.maximum(a[0][..., None], b[0][..., None] - step)
-        high = np.minimum(a[1][..., None], b[1][..., None] - step)
-        open_sides.append(low <= high + 1e-12)
-        sides.append((low, np.maximum(low, high)))
-    circle = [
-        np.stack((sides[0][i], sides[1][j], sides[0][i] + step_y, sides[1][j] + step_z))
-        for i, j in CORNERS
-    ]
-    offsets = np.concatenate(
-        [box, np.stack(circle, axis=-1).reshape(4, *distance.shape, -1)], axis=-1
+    step = radius * np.stack([np.cos(turns), np.sin(turns)])
+    ends = bounds.ends[..., None]
+    low = np.maximum(ends[:2, 0], ends[2:, 0] - step)
+    high = np.minimum(ends[:2, 1], ends[2:, 1] - step)
+    sides = np.stack([low, np.maximum(low, high)])
+    reachable = np.all(low <= high + 1e-12, axis=0)
+    wide = high - low > 1e-12  # a side that has shrunk to a point is tried once
+    circle = np.empty((4, *turns.shape, len(CORNERS)))
+    valid = np.empty((*turns.shape, len(CORNERS)), dtype=bool)
+    for k, (i, j) in enumerate(CORNERS):
+        circle[0, ..., k], circle[1, ..., k] = sides[i, 0], sides[j, 1]
+        valid[..., k] = reachable & (wide[0] | (i == 0)) & (wide[1] | (j == 0))
+    circle[2:] = circle[:2] + step[..., None]
+    flat = (*bounds.distance.shape, -1)
+    return (
+        np.concatenate([box, circle.reshape(4, *flat)], axis=-1),
+        np.concatenate([box_valid, valid.reshape(flat)], axis=-1),
     )
-    on_circle = np.repeat(open_sides[0] & open_sides[1], len(CORNERS), axis=-1)
-    return offsets, np.concatenate([box_valid, on_circle], axis=-1)
+
+
+def turn_of(slot: int) -> int:
+    """The number of a slot's turn; 0 for a corner of the box, which has none."""
+    return max(slot - len(BOX), 0) // len(CORNERS)
 
 
 def log_at(offsets: np.ndarray, distance: np.ndarray) -> Log:
@@ -145,11 +147,10 @@ def bounds_met(numbers: Numbers, set_name: str, state: str, log: Log) -> str:
     for name, value in (("shortest", low), ("longest", high)):
         if abs(log.l_AB - value) < near:
             words.append(f"{name} distance")
-    sides = {"y": ("right", "left"), "z": ("lower", "upper")}
-    for tool, contact in (("moving", "a"), ("fixed", "b")):
-        for axis, names in sides.items():
-            value = getattr(log, f"{contact}_{axis}")
-            for name, limit in zip(names, getattr(bounds, f"{contact}_{axis}"), strict=True):
-                if abs(value - limit) < near:
-                    words.append(f"{name} end of the {tool} tool's range")
+    names = {"y": ("right", "left"), "z": ("lower", "upper")}
+    for name, ends in zip(OFFSETS, bounds.ends, strict=True):
+        tool = "moving" if name[0] == "a" else "fixed"
+        for end, limit in zip(names[name[2]], ends, strict=True):
+            if abs(getattr(log, name) - limit) < near:
+                words.append(f"{end} end of the {tool} tool's range")
     return "; ".join(words) or "inside the set"

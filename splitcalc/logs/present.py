@@ -9,7 +9,7 @@ from typing import Any
 import numpy as np
 
 from splitcalc.findings import Check, Finding
-from splitcalc.logs.allowed import STATES, allowed, distances
+from splitcalc.logs.allowed import OFFSETS, STATES, allowed, distances
 from splitcalc.logs.report import acting_on, find
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.shapes.section import Section
@@ -54,8 +54,7 @@ def narrowest_set(numbers: Numbers, log: Log) -> tuple[str, str]:
             bounds = allowed(numbers, set_name, state, np.array(float(log.l_AB)))
             slope = np.hypot(log.b_y - log.a_y, log.b_z - log.a_z) / log.l_AB
             inside = low <= log.l_AB <= high and slope <= bounds.slope * (1 + 1e-9)
-            for name in ("a_y", "a_z", "b_y", "b_z"):
-                least, most = getattr(bounds, name)
+            for name, (least, most) in zip(OFFSETS, bounds.ends, strict=True):
                 inside = inside and least - 1e-9 <= getattr(log, name) <= most + 1e-9
             if inside:
                 return set_name, state

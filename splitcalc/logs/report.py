@@ -11,7 +11,7 @@ import numpy as np
 from splitcalc.equations import Line, recording
 from splitcalc.findings import Check, Finding, worst_place
 from splitcalc.logs.allowed import bounds_met
-from splitcalc.logs.search import Spot, log_of, search
+from splitcalc.logs.search import Spot, search
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.thrust.frame import Log, frame_of, stations
 from splitcalc.thrust.statics import Actions, actions
@@ -87,7 +87,7 @@ def findings(checks: Sequence[Check], numbers: Numbers, units: Any = "si") -> li
             why = why or "a number in it is not finite"
             out.append(Finding(check, set_name, applies=does, given=not does, why=why, units=units))
             continue
-        log = log_of(numbers, spot)
+        log = spot.log
         bound = bounds_met(numbers, set_name, spot.state, log)
         about = {"set": set_name, "state": spot.state, "bound": bound}
         out.append(find(check, numbers, acting_on(numbers, log), units, **about))

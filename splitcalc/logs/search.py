@@ -1,196 +1,181 @@
-"""The search for the worst log of each check: a coarse net of candidates, then nearer and nearer.
+"""The search for the worst log of each check: a coarse net of distances, then nearer and nearer.
 
-Exact for measures that are convex in the actions (see `allowed`); only the distance, and the t
-that isn't critical, are refined.
+At each distance the candidates of `allowed` hold the worst log exactly for a measure that is
+convex in the actions, but for the turn on the circle of the steepest slope. So what is refined is
+the distance, and that turn. While refining, only the stations and stress points that came near the
+worst are evaluated; the finding looks at all of them again.
 """
 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, replace
 from itertools import product
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
 import numpy as np
 
 from splitcalc.findings import Check, demand_over_capacity, worst_place
 from splitcalc.logs.allowed import (
-    BOX,
-    CORNERS,
-    CRITICAL,
     STATES,
     allowed,
     candidates,
     critical_turns,
     distances,
+    joined,
     log_at,
+    turn_of,
 )
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.thrust.frame import Log, frame_of, stations
 from splitcalc.thrust.statics import actions
 
-DISTANCES = 6  # per set and state, before refining
-TURNS = 12  # evenly spaced t, besides the critical ones
-TURN = 2 * np.pi / TURNS
-# refining: rounds, tries on each side in distance and in t, how much finer the next round is
-ZOOMS, TRIES, SWINGS = 3, 10, 3
-HOPELESS = 0.95  # a state this far below the worst after a round is left alone
-SEARCHING = 1  # stations per stretch
-KEPT = 3  # slots of each set and state that are refined
-BLOCK = 6  # rows of distances that go through the checks together
+DISTANCES = 7  # of the coarse net, per set and state
+TURNS = 12  # evenly spaced turns of the coarse net, besides the critical ones
+# refining: rounds, distances and turns to try in each, how much nearer the next one looks
+ROUNDS, TRIES, SWINGS, FINER = 4, 9, 5, 4.0
+NEAR = 0.9  # a station, a point or a state this near to the worst is looked at again
 
 
 @dataclass(frozen=True)
 class Spot:
-    """One candidate: a slot at a distance, with its t where the slot is not critical."""
+    """A log and its value; `reach` and `swing` are what is still in doubt of distance and turn."""
 
     set: str
     state: str
-    distance: float
-    slot: int
-    turn: float
     value: float
-    reach: float  # half of the stretch of distances still in doubt [m]
-    swing: float  # half of the range of t still in doubt
+    log: Log
+    turn: float
+    reach: float
+    swing: float
 
 
-def utilisations(
-    checks: Sequence[Check], numbers: Numbers, logs: Log, per_stretch: int = SEARCHING
-) -> list[np.ndarray]:
-    """Largest demand over capacity on the whole beam for each log, one array a check."""
+class Net(NamedTuple):
+    """Distances to look at, with the turns to try at each of them besides the critical ones."""
+
+    set: str
+    state: str
+    distance: np.ndarray
+    turns: np.ndarray
+    reach: float
+    swing: float
+
+
+class Kept(NamedTuple):
+    """Indices of the stations and stress points to look at."""
+
+    stations: np.ndarray
+    points: np.ndarray
+
+
+def values_at(
+    check: Check, numbers: Numbers, logs: Log, per_stretch: int = 1, kept: Any = slice(None)
+) -> np.ndarray:
+    """Demand over capacity, shape `logs + (stations, points)`; `kept` picks stations."""
     frame = frame_of(numbers, logs)
-    acting = actions(frame, stations(numbers, frame, per_stretch))
-    return [worst_place(demand_over_capacity(check, numbers, acting))[0] for check in checks]
+    x = stations(numbers, frame, per_stretch)[..., kept, :]
+    return demand_over_capacity(check, numbers, actions(frame, x))
 
 
 def search(checks: Sequence[Check], numbers: Numbers) -> dict[tuple[str, str], Spot]:
-    """The worst candidate for each (check id, set)."""
-    spots = _coarse(checks, numbers)
-    for _ in range(ZOOMS):
-        spots = _zoom(checks, numbers, spots)
-    return {(checks[k].id, spot.set): spot for k, spot in sorted(spots, key=_by_value)}
+    """The worst log for each (check id, set)."""
+    return {(c.id, name): spot for c in checks for name, spot in _worst(c, numbers).items()}
 
 
-def _by_value(found: tuple[int, Spot]) -> float:
-    return found[1].value
+def _worst(check: Check, numbers: Numbers) -> dict[str, Spot]:
+    """The worst log of each set for one check."""
+    spots, kept = _look(check, numbers, _coarse(numbers), slice(None))
+    numbers = numbers.at_point(kept.points)
+    for _ in range(ROUNDS):
+        spots = [
+            spot
+            for spot in spots
+            if spot.value >= NEAR * max(s.value for s in spots if s.set == spot.set)
+        ]
+        seen, _ = _look(check, numbers, [_nearer(numbers, s) for s in spots], kept.stations)
+        spots = [
+            replace(max(pair, key=_value), reach=old.reach / FINER, swing=old.swing / FINER)
+            for old, pair in ((old, (new, old)) for old, new in zip(spots, seen, strict=True))
+        ]
+    return {spot.set: spot for spot in sorted(spots, key=_value)}
 
 
-def _coarse(checks: Sequence[Check], numbers: Numbers) -> list[tuple[int, Spot]]:
-    """For each check (by its number) the worst slot of every set and state, on a coarse net."""
-    even = np.tile(np.linspace(0, 2 * np.pi, TURNS, endpoint=False), (DISTANCES, 1))
+def _value(spot: Spot) -> float:
+    return spot.value
+
+
+def _coarse(numbers: Numbers) -> list[Net]:
+    turns = np.linspace(0, 2 * np.pi, TURNS, endpoint=False)
     nets = []
     for set_name, state in product(SETS, STATES):
-        distance = np.linspace(*distances(numbers, state), DISTANCES)
-        bounds = allowed(numbers, set_name, state, distance)
-        turns = np.concatenate([critical_turns(bounds, distance), even], axis=-1)
-        offsets, valid = candidates(bounds, distance, turns)
-        # all sections here are symmetric about z: of a log and its mirror image one is enough
-        valid &= offsets[2] >= offsets[0]
-        nets.append((set_name, state, distance, turns, offsets, valid))
-    distance, offsets, valid = (
-        np.concatenate([net[k] for net in nets], axis=axis) for k, axis in ((2, 0), (4, 1), (5, 0))
+        low, high = distances(numbers, state)
+        distance = np.linspace(low, high, DISTANCES)
+        if state == "first bite" and _within_buried(numbers, set_name, distance):
+            continue
+        reach = (high - low) / (DISTANCES - 1)
+        nets.append(Net(set_name, state, distance, turns, reach, 2 * np.pi / TURNS))
+    return nets
+
+
+def _within_buried(numbers: Numbers, set_name: str, distance: np.ndarray) -> bool:
+    """Whether every first bite is also an allowed buried log: then one state is enough."""
+    first = allowed(numbers, set_name, "first bite", distance)
+    buried = allowed(numbers, set_name, "buried", distance)
+    return bool(
+        distance[0] >= numbers.gap
+        and np.all(first.ends[:, 0] >= buried.ends[:, 0] - 1e-12)
+        and np.all(first.ends[:, 1] <= buried.ends[:, 1] + 1e-12)
     )
-    order = np.argsort(~valid, axis=-1, kind="stable")[:, : valid.sum(axis=-1).max()]
-    kept = np.take_along_axis(offsets, order[None], axis=-1)
-    good = np.take_along_axis(valid, order, axis=-1)
-    spots = []
-    for k, values in enumerate(_in_blocks(checks, numbers, kept, distance)):
-        values = np.where(good, values, -np.inf).reshape(len(nets), DISTANCES, -1)
-        for net, part in enumerate(values):
-            set_name, state, near, turns, *_ = nets[net]
-            slots = order[net * DISTANCES : (net + 1) * DISTANCES]
-            seen: set[int] = set()
-            for flat in part.argsort(axis=None)[::-1]:
-                row, column = np.unravel_index(flat, part.shape)
-                slot = int(slots[row, column])
-                if len(seen) == KEPT or not np.isfinite(part[row, column]):
-                    break
-                if slot in seen:
-                    continue
-                seen.add(slot)
-                turn = turns[row, max(slot - len(BOX), 0) // len(CORNERS)]
-                value, step = float(part[row, column]), float(near[1] - near[0])
-                spot = Spot(set_name, state, float(near[row]), slot, float(turn), value, step, TURN)
-                spots.append((k, spot))
-    return spots
 
 
-def _in_blocks(
-    checks: Sequence[Check], numbers: Numbers, offsets: np.ndarray, distance: np.ndarray
-) -> list[np.ndarray]:
-    """`utilisations` of rows of logs, in blocks that fit the cache, on two threads."""
-
-    def block(i: int) -> list[np.ndarray]:
-        rows = slice(i, i + BLOCK)
-        return utilisations(checks, numbers, log_at(offsets[:, rows], distance[rows]))
-
-    with ThreadPoolExecutor(2) as pool:
-        parts = list(pool.map(block, range(0, len(distance), BLOCK)))
-    return [np.concatenate(rows) for rows in zip(*parts, strict=True)]
-
-
-def _zoom(
-    checks: Sequence[Check], numbers: Numbers, spots: list[tuple[int, Spot]]
-) -> list[tuple[int, Spot]]:
-    """Look again around each spot, nearer. All spots go through the checks in one call."""
-    worst: dict[tuple[int, str], float] = {}
-    for k, spot in spots:
-        worst[k, spot.set] = max(spot.value, worst.get((k, spot.set), 0.0))
-    spots = [(k, spot) for k, spot in spots if spot.value >= HOPELESS * worst[k, spot.set]]
-    tries = [_around(numbers, spot) for _, spot in spots]
-    distance = np.concatenate([near.distance for near in tries])
-    offsets = np.concatenate([near.offsets for near in tries], axis=1)[..., None]
-    values = [v[..., 0] for v in utilisations(checks, numbers, log_at(offsets, distance))]
-    out = []
-    end = 0
-    for (k, spot), near in zip(spots, tries, strict=True):
-        start, end = end, end + len(near.distance)
-        seen = np.where(near.valid, values[k][start:end], -np.inf)
-        i = int(seen.argmax())
-        if seen[i] > spot.value:
-            spot = replace(
-                spot,
-                distance=float(near.distance[i]),
-                turn=float(near.turns[i]),
-                value=float(seen[i]),
-            )
-        out.append((k, replace(spot, reach=spot.reach / TRIES, swing=spot.swing / SWINGS)))
-    return out
-
-
-class Near(NamedTuple):
-    """Places to try: distances, offsets, whether the log is allowed, t."""
-
-    distance: np.ndarray
-    offsets: np.ndarray
-    valid: np.ndarray
-    turns: np.ndarray
-
-
-def _around(numbers: Numbers, spot: Spot) -> Near:
+def _nearer(numbers: Numbers, spot: Spot) -> Net:
     low, high = distances(numbers, spot.state)
-    steps = np.linspace(-1, 1, 2 * TRIES + 1)
-    on_circle = spot.slot >= len(BOX)
-    number, corner = divmod(spot.slot - len(BOX), len(CORNERS)) if on_circle else (0, 0)
-    free = on_circle and number >= CRITICAL
-    swings = np.linspace(-1, 1, 2 * SWINGS + 1) if free else np.zeros(1)
-    distance, turns = (
-        part.ravel()
-        for part in np.meshgrid(
-            np.clip(spot.distance + spot.reach * steps, low, high),
-            spot.turn + spot.swing * swings,
-        )
+    return Net(
+        spot.set,
+        spot.state,
+        np.clip(spot.log.l_AB + spot.reach * np.linspace(-1, 1, TRIES), low, high),
+        spot.turn + spot.swing * np.linspace(-1, 1, SWINGS),
+        spot.reach,
+        spot.swing,
     )
-    bounds = allowed(numbers, spot.set, spot.state, distance)
-    if on_circle and not free:
-        turns = critical_turns(bounds, distance)[..., number]
-    offsets, valid = candidates(bounds, distance, turns[..., None])
-    at = len(BOX) + corner if on_circle else spot.slot
-    return Near(distance, offsets[..., at], valid[..., at], turns)
 
 
-def log_of(numbers: Numbers, spot: Spot) -> Log:
-    """The spot's log, as scalars."""
-    near = _around(numbers, replace(spot, reach=0.0, swing=0.0))
-    return Log(spot.distance, *(float(part) for part in near.offsets[:, 0]))
+def _look(
+    check: Check, numbers: Numbers, nets: Sequence[Net], kept: Any
+) -> tuple[list[Spot], Kept]:
+    """The worst log of each net, and the stations and points that came near it."""
+    bounds = joined([allowed(numbers, net.set, net.state, net.distance) for net in nets])
+    free = np.concatenate([np.broadcast_to(n.turns, (len(n.distance), len(n.turns))) for n in nets])
+    turns = np.concatenate([critical_turns(bounds), free], axis=-1)
+    offsets, valid = candidates(bounds, turns)
+    # all sections here are symmetric about z: of a log and its mirror image one is enough
+    valid &= offsets[2] >= offsets[0]
+    # the allowed ones to the front: rows of one length, filled up with their first
+    order = np.argsort(~valid, axis=-1, kind="stable")[:, : valid.sum(axis=-1).max()]
+    order = np.where(np.take_along_axis(valid, order, axis=-1), order, order[:, :1])
+    offsets = np.take_along_axis(offsets, order[None], axis=-1)
+    values = values_at(check, numbers, log_at(offsets, bounds.distance), kept=kept)
+    tops, _ = worst_place(values)
+    spots: list[Spot] = []
+    near_x, near_p = np.zeros(values.shape[-2], bool), np.zeros(values.shape[-1], bool)
+    end = 0
+    for net in nets:
+        start, end = end, end + len(net.distance)
+        top = tops[start:end]
+        row, column = np.unravel_index(top.argmax(), top.shape)
+        slot = order[start + row, column]
+        near = values[start:end][top >= NEAR * top.max()] >= NEAR * top.max()
+        near_x |= near.any(axis=(0, 2))
+        near_p |= near.any(axis=(0, 1))
+        spots.append(
+            Spot(
+                net.set,
+                net.state,
+                float(top.max()),
+                Log(float(net.distance[row]), *offsets[:, start + row, column].tolist()),
+                float(turns[start + row, turn_of(slot)]),
+                net.reach,
+                net.swing,
+            )
+        )
+    return spots, Kept(np.flatnonzero(near_x), np.flatnonzero(near_p))

@@ -98,8 +98,8 @@ class Numbers:
     yield_factors: Mapping[str, Array]
     lines: tuple[Line, ...] = ()  # the equations that made these numbers
 
-    def at_point(self, index: int) -> Numbers:
-        """The same machine with one stress point, for replaying."""
+    def at_point(self, index: Any) -> Numbers:
+        """The same machine with one stress point, for replaying, or with those of an array."""
         return replace(self, section=self.section.at_point(index))
 
 

@@ -96,14 +96,15 @@ class Section:
         """Plastic moduli Z_y, Z_z of a section of scalars. [m³]"""
         return plastic_moduli(list(self.parts))
 
-    def at_point(self, index: int) -> Section:
-        """The same section with one stress point, as scalars: for replaying."""
-        one = {
+    def at_point(self, index: Any) -> Section:
+        """The same section with one stress point, as scalars, or with those of an index array."""
+        some = {
             f.name: np.asarray(getattr(self.points, f.name))[..., index]
             for f in fields(Points)
             if f.name != "names"
         }
-        return replace(self, points=Points((self.points.names[index],), **one))
+        names = tuple(np.atleast_1d(np.array(self.points.names)[index]))
+        return replace(self, points=Points(names, **some))
 
 
 def assemble(

@@ -170,9 +170,12 @@ def stations(numbers: Numbers, frame: Frame, per_stretch: int) -> Array:
         start, end = frame.patches[name]
         marks += [start - c, start, (start + end) / 2, end, end + c]
     marks += [*numbers.stiffeners, *(x for zone in numbers.closed_zones for x in zone)]
-    marks = [np.clip(mark, numbers.x_start, numbers.x_end) for mark in marks]
-    lines = np.broadcast_arrays(*(np.asarray(m, dtype=float) for m in marks))
-    edges = np.sort(np.stack([m[..., 0, 0] if m.ndim else m for m in lines], axis=-1), axis=-1)
+    samples = np.broadcast_shapes(*(np.shape(mark)[:-2] for mark in marks))
+    edges = np.empty((*samples, len(marks)))
+    for k, mark in enumerate(marks):
+        edges[..., k] = mark[..., 0, 0] if np.ndim(mark) else mark
+    ends = (np.asarray(x)[..., 0] if np.ndim(x) else x for x in (numbers.x_start, numbers.x_end))
+    edges = np.sort(np.minimum(np.maximum(edges, next(ends)), next(ends)), axis=-1)
     share = np.arange(per_stretch) / per_stretch
     steps = np.diff(edges, axis=-1)[..., None] * share
     inner = (edges[..., :-1, None] + steps).reshape(*edges.shape[:-1], -1)
