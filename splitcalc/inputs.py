@@ -12,7 +12,7 @@ import difflib
 import functools
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, field
-from typing import Any
+from typing import Any, get_args
 
 from splitcalc.units import Dimension, UnitError, parse, show
 
@@ -122,7 +122,7 @@ def read_value(value: Any, fact: Fact) -> Any:
     """One value of a parsed file as its field wants it; ValueError says what is allowed."""
     if fact.dimension is None:
         if not isinstance(value, str):
-            raise ValueError(f"found {value!r}; text in quotes is wanted ({fact.words})")
+            raise ValueError(f"found {found(value)}; text in quotes is wanted ({fact.words})")
         if fact.options and value not in fact.options:
             allowed = ", ".join(f'"{o}"' for o in fact.options)
             raise ValueError(f'found "{value}"; allowed: {allowed}{_nearest(value, fact.options)}')
@@ -132,7 +132,7 @@ def read_value(value: Any, fact: Fact) -> Any:
     if isinstance(value, int | float) and not isinstance(value, bool):
         value = str(value)
     if not isinstance(value, str):
-        raise ValueError(f'found {value!r}; wanted: {fact.words}, such as "{_example(fact)}"')
+        raise ValueError(f'found {found(value)}; wanted: {fact.words}, such as "{_example(fact)}"')
     try:
         out = entry(value, fact.dimension)
     except UnitError as error:
@@ -144,7 +144,19 @@ def read_value(value: Any, fact: Fact) -> Any:
 
 def _example(fact: Fact) -> str:
     assert fact.dimension is not None
-    return fact.default or fact.dimension.example
+    return fact.dimension.example if fact.default in (REQUIRED, None) else str(fact.default)
+
+
+def found(value: Any) -> str:
+    """What stands in the file, in the words of the file's format."""
+    if isinstance(value, bool):
+        return str(value).lower()
+    if isinstance(value, Mapping):
+        return "a table"
+    if isinstance(value, list):
+        return "a list"
+    text = f'"{value}"' if isinstance(value, str) else str(value)
+    return text if len(text) <= 60 else text[:57] + "..."
 
 
 def _range(fact: Fact, like: str) -> str:
@@ -166,6 +178,15 @@ def _read_field(fact: Fact, value: Any, _: Any) -> Any:
     return read_value(value, fact)
 
 
+def _read_list(conv: Any, name: str, value: Any, kind: Any) -> Any:
+    if not isinstance(value, list):
+        raise ValueError(
+            f"found {found(value)}; a list is wanted, one table for each headed [[...{name}]]"
+        )
+    part: Any = get_args(kind)[0]
+    return tuple(conv.structure(value, list[part]))
+
+
 @functools.cache
 def converter() -> Any:
     """cattrs, told how our fields are read. Imported here: reading is its only use."""
@@ -180,13 +201,16 @@ def converter() -> Any:
             for item in dataclasses.fields(cls)
             if (fact := fact_of(item)) is not None
         }
+        for item in dataclasses.fields(cls):
+            if item.default_factory is tuple:
+                own[item.name] = override(struct_hook=functools.partial(_read_list, conv, item.name))
         structure = make_dict_structure_fn(
             cls, conv, _cattrs_forbid_extra_keys=True, _cattrs_detailed_validation=True, **own
         )
 
         def checked(value: Any, kind: Any) -> Any:
             if not isinstance(value, Mapping):
-                raise ValueError(f"found {value!r}; a table is wanted")
+                raise ValueError(f"found {found(value)}; a table is wanted")
             return structure(value, kind)
 
         return checked
@@ -216,16 +240,12 @@ def _problems(error: BaseException, path: str, cls: Any) -> Iterator[Problem]:
 
     if isinstance(error, cattrs.BaseValidationError):
         for inner in error.exceptions:
-            note = next(
-                (n for n in getattr(inner, "__notes__", ()) if hasattr(n, "name")
-                 or hasattr(n, "index")), None,
-            )  # fmt: skip
-            if note is None:
-                step = path
-            elif hasattr(note, "index"):
-                step = f"{path}[{note.index + 1}]"
-            else:
-                step = f"{path}.{note.name}".lstrip(".")
+            step = path
+            for note in getattr(inner, "__notes__", ()):
+                if isinstance(note, cattrs.AttributeValidationNote):
+                    step = f"{path}.{note.name}".lstrip(".")
+                elif isinstance(note, cattrs.IterableValidationNote):
+                    step = f"{path}[{int(note.index) + 1}]"
             yield from _problems(inner, step, getattr(error, "cl", cls))
     elif isinstance(error, cattrs.ForbiddenExtraKeysError):
         known = tuple(f.name for f in dataclasses.fields(error.cl))

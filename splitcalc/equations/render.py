@@ -77,6 +77,8 @@ def _render(node: ast.expr, leaf: Callable[[str], str], times: str) -> tuple[str
         case ast.UnaryOp(op=ast.USub(), operand=operand):
             return "−" + _bracket(operand, UNARY, leaf, times), UNARY
         case ast.BinOp(left=left, op=op, right=right):
+            if type(op) not in OPERATORS:
+                raise ValueError(f"{ast.unparse(node)} can't be printed")
             sign, level = OPERATORS[type(op)]
             # the right side of - / and ^ needs brackets already at the same level
             tight = level + isinstance(op, ast.Sub | ast.Div | ast.Pow)

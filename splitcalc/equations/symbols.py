@@ -61,6 +61,7 @@ SYMBOLS: dict[str, Symbol] = {
     ),
     **_rows(
         D.MOMENT,
+        D="plate stiffness of the web",
         K="roll couple of the sled on the beam",
         K_i="roll couple at this pad",
         M_f="moment of the fixed tool about its root weld",
@@ -167,7 +168,6 @@ SYMBOLS: dict[str, Symbol] = {
     **_rows(D.LINE_FORCE, n_m="force per length that enters the web"),
     **_rows(
         D.LINE_MOMENT,
-        D="plate stiffness of the web",
         k_w="rotational spring of the web per length",
         m_w="plate moment at the top of the web, per length",
     ),

@@ -13,7 +13,17 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-from splitcalc.inputs import REQUIRED, Entry, Fact, InputError, Problem, converter, read, walk
+from splitcalc.inputs import (
+    REQUIRED,
+    Entry,
+    Fact,
+    InputError,
+    Problem,
+    converter,
+    found,
+    read,
+    walk,
+)
 from splitcalc.machine.document import Document
 from splitcalc.machine.fit import misfits
 from splitcalc.machine.numbers import Numbers, Overrides, numbers_of
@@ -92,10 +102,10 @@ def _section(value: Any, _: Any) -> Family:
                 f"shape = one of {', '.join(FAMILIES)}, and its dimensions"
             ) from None
     if not isinstance(value, Mapping):
-        raise ValueError(f"found {value!r}; wanted a section's name or a table with a shape")
-    shape = value.get("shape")
+        raise ValueError(f"found {found(value)}; wanted a section's name or a table with a shape")
+    shape = value.get("shape", "")
     if shape not in FAMILIES:
-        raise ValueError(f"shape = {shape!r}; allowed: {', '.join(FAMILIES)}")
+        raise ValueError(f"shape = {found(shape)}; allowed: {', '.join(FAMILIES)}")
     rest = {key: part for key, part in value.items() if key != "shape"}
     return converter().structure(rest, FAMILIES[shape])
 
@@ -130,7 +140,7 @@ def parse_machine(data: bytes) -> Machine:
         ) from None
     try:
         tables = tomllib.loads(text.replace("\r\n", "\n"))
-    except (tomllib.TOMLDecodeError, RecursionError) as error:
+    except (ValueError, RecursionError) as error:  # ValueError: also a number without end
         raise InputError([Problem("file", f"not TOML: {error}")]) from None
     converter().register_structure_hook(Family, _section)
     document = read(Document, tables)

@@ -49,13 +49,16 @@ def _tools(doc: Document) -> Found:
         yield "fixed_tool.kind", f'both tools are "{doc.fixed_tool.kind}"; one must be the wedge'
     for name, tool in (("moving_tool", doc.moving_tool), ("fixed_tool", doc.fixed_tool)):
         low, high = tool.bottom.si, tool.bottom.si + tool.height.si
-        first = tool.contact_low or tool.bottom
-        last = tool.contact_high.si if tool.contact_high else high
-        if not low - 1e-9 <= first.si <= last <= high + 1e-9:
+        tall = f'"{tool.bottom.text}" to "{tool.bottom.text}" + "{tool.height.text}"'
+        for key in ("contact_low", "contact_high"):
+            entry = getattr(tool, key)
+            if entry and not low - 1e-9 <= entry.si <= high + 1e-9:
+                yield f"{name}.{key}", f'"{entry.text}" must lie on the tool, {tall}'
+        first, last = tool.contact_low or tool.bottom, tool.contact_high
+        if last and first.si > last.si:
             yield (
-                f"{name}.contact_low",
-                f'contact from "{first.text}" up must lie on the tool, between its lower edge '
-                f"({low:.4g} m) and its upper edge ({high:.4g} m), low below high",
+                f"{name}.contact_high",
+                f'"{last.text}" must not lie below contact_low "{first.text}"',
             )
         half = tool.contact_half_width
         if half and half.si > tool.width.si / 2 + 1e-9 and tool.kind == "push plate":
@@ -184,9 +187,9 @@ def _sled(doc: Document) -> Found:
     rear, front, length = pads_of(sled)
     if rear - front < length:
         yield (
-            f"sled.{wanted[0]}",
-            f"the pads overlap: the rear pad's middle must be at least {length * 1e3:.4g} mm "
-            "behind the front pad's",
+            f"sled.{wanted[1]}",
+            "the pads overlap: the rear pad's middle must be at least one pad length behind the "
+            "front pad's",
         )
     edge, opening = doc.fixed_tool.edge_x.si, doc.logs.smallest_gap.si + doc.cylinder.stroke.si
     if edge - opening - rear - length / 2 < doc.beam.rear_end.si:
