@@ -18,12 +18,14 @@ WIDTH = 100
 
 def _check(args: argparse.Namespace) -> int:
     from splitcalc.checks import ALL, NOT_YET
+    from splitcalc.logs.allowed import ASSUMPTIONS
     from splitcalc.logs.report import findings, governing
     from splitcalc.logs.words import sentence, still_open, table
     from splitcalc.machine.file import load
 
     machine = load(args.file)
-    results = findings(ALL, machine.numbers(), machine.units)
+    numbers = machine.numbers()
+    results = findings(ALL, numbers, machine.units)
     passed = all(f.holds for f in results)
     if args.json:
         worst = governing(results)
@@ -31,7 +33,7 @@ def _check(args: argparse.Namespace) -> int:
             "machine": _about(machine),
             "passed": passed,
             "governing": worst and {"id": worst.check.id, "set": worst.set},
-            "assumptions": machine.assumptions(),
+            "assumptions": [*machine.assumptions(), *numbers.notes, *ASSUMPTIONS],
             "not_covered": list(NOT_COVERED),
             "not_yet_checked": list(NOT_YET),
             "cautions": CAUTIONS,
@@ -42,6 +44,9 @@ def _check(args: argparse.Namespace) -> int:
         print(_wrapped(f"{machine.title}. {sentence(results)} {still_open(NOT_YET)}"))
         print()
         print("\n".join(table(results)))
+        if numbers.notes:
+            print()
+            print(_wrapped(f"Note: {'; '.join(numbers.notes)}."))
         print()
         print(_wrapped(f"Not covered: {'; '.join(NOT_COVERED)}."))
         print()

@@ -203,7 +203,9 @@ def converter() -> Any:
         }
         for item in dataclasses.fields(cls):
             if item.default_factory is tuple:
-                own[item.name] = override(struct_hook=functools.partial(_read_list, conv, item.name))
+                own[item.name] = override(
+                    struct_hook=functools.partial(_read_list, conv, item.name)
+                )
         structure = make_dict_structure_fn(
             cls, conv, _cattrs_forbid_extra_keys=True, _cattrs_detailed_validation=True, **own
         )

@@ -26,6 +26,18 @@ from splitcalc.machine.numbers import Contact, Numbers
 from splitcalc.thrust.frame import Log
 
 STATES = ("first bite", "buried")
+# What the sets of logs take for granted; printed with every calculation.
+ASSUMPTIONS = (
+    "the log carries force along the line between its two contacts alone; sled friction, which "
+    "only lowers the thrust, is left out",
+    "usual logs: contacts within half of each range, slope of the thrust within half of the grip; "
+    "extreme logs: the whole of both",
+    "beside a buried wedge the line of thrust may pass by t/2 + f_90·h·c²/(4·F) to each side, c "
+    "the buried length of the longest log, and over the wedge's full height",
+    "on the push plate a contact keeps 25 mm and F/(2·width·end grain strength) from every edge",
+    "on a raked edge the contact is taken at edge_x at every height",
+    "an upright machine has the same statics; own weight is left out (under 2 % of the force)",
+)
 OFFSETS = ("a_y", "a_z", "b_y", "b_z")
 SHARE = {"usual": 0.5, "extreme": 1.0}  # of each contact range and of the grip
 

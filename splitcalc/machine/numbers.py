@@ -25,6 +25,9 @@ Overrides = Mapping[str, Array]
 
 SETS = ("usual", "extreme")
 CRUSHED_EDGE = 0.025  # m: no thrust within this distance of the push plate's edges
+TOO_SMALL = (
+    "the push plate is so small that the wood crushes up to its middle: the contact is taken there"
+)
 YIELD = {"AISC": 1.67, "EN": 1.5 * 1.0}  # AISC 360-22 (ASD); EN 1993-1-1 gamma_F * gamma_M0
 
 
@@ -97,6 +100,7 @@ class Numbers:
     closed_zones: tuple[tuple[float, float], ...]
     yield_factors: Mapping[str, Array]
     lines: tuple[Line, ...] = ()  # the equations that made these numbers
+    notes: tuple[str, ...] = ()  # what a reviewer must know of these numbers
 
     def at_point(self, index: Any) -> Numbers:
         """The same machine with one stress point, for replaying, or with those of an array."""
@@ -154,6 +158,8 @@ def _numbers(document: Document, overrides: Overrides | None) -> Numbers:
         fixed = _inset(fixed, edge)
     else:
         moving = _inset(moving, edge)
+    room = np.minimum(get(f"{plate_key}.width"), get(f"{plate_key}.height")) / 2
+    notes = (TOO_SMALL,) if np.any(edge > room) else ()
     grip = get(f"{plate_key}.grip_limit")
     side = get("sled.side_contact_height")
     usual = get("factors.yield_usual")
@@ -197,6 +203,7 @@ def _numbers(document: Document, overrides: Overrides | None) -> Numbers:
             "usual": YIELD[document.basis.design] if usual is None else usual,
             "extreme": get("factors.yield_extreme"),
         },
+        notes=notes,
     )
 
 
