@@ -83,6 +83,13 @@ def allowed(numbers: Numbers, set_name: str, state: str, distance: np.ndarray) -
     return Range(ends, np.full(distance.shape, share * numbers.grip), distance)
 
 
+def holds_a_log(bounds: Range) -> np.ndarray:
+    """Whether any log is allowed at each distance: the ranges are near enough for the slope."""
+    a, b = bounds.ends[:2], bounds.ends[2:]
+    apart = np.maximum(np.maximum(b[:, 0] - a[:, 1], a[:, 0] - b[:, 1]), 0.0)
+    return np.asarray(np.hypot(*apart) <= bounds.slope * bounds.distance)
+
+
 def joined(ranges: Sequence[Range]) -> Range:
     """Ranges behind one another."""
     return Range(*(np.concatenate(parts, axis=-1) for parts in zip(*ranges, strict=True)))

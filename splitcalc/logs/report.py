@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from itertools import product
 from typing import Any
 
 import numpy as np
@@ -16,6 +15,10 @@ from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.thrust.frame import Log, frame_of, stations
 from splitcalc.thrust.statics import Actions, actions
 
+NO_LOG = (
+    "no log of this set can be held: every thrust that meets both tools in their ranges is steeper "
+    "than the grip allows"
+)
 PER_STRETCH = 12  # stations of a finding: some 250 on a plain beam
 
 
@@ -78,31 +81,26 @@ def find(
 
 def findings(checks: Sequence[Check], numbers: Numbers, units: Any = "si") -> list[Finding]:
     """Every check's finding for each set, at its worst allowed log."""
-    best = _worst(checks, numbers)
     out = []
-    for check, set_name in product(checks, SETS):
-        spot = best.get((check.id, set_name))
-        if spot is None:
-            does, why = check.applies(numbers)
-            why = why or "a number in it is not finite"
-            out.append(Finding(check, set_name, applies=does, given=not does, why=why, units=units))
-            continue
-        log = spot.log
-        bound = bounds_met(numbers, set_name, spot.state, log)
-        about = {"set": set_name, "state": spot.state, "bound": bound}
-        out.append(find(check, numbers, acting_on(numbers, log), units, **about))
+    for check in checks:
+        does, why = check.applies(numbers)
+        best: dict[tuple[str, str], Spot] = {}
+        if does:
+            why = NO_LOG
+            try:
+                best = search([check], numbers)
+            except FloatingPointError as error:
+                why = str(error)
+        for set_name in SETS:
+            spot = best.get((check.id, set_name))
+            if spot is None:
+                nothing = Finding(check, set_name, does, given=not does, why=why, units=units)
+                out.append(nothing)
+                continue
+            bound = bounds_met(numbers, set_name, spot.state, spot.log)
+            about = {"set": set_name, "state": spot.state, "bound": bound}
+            out.append(find(check, numbers, acting_on(numbers, spot.log), units, **about))
     return out
-
-
-def _worst(checks: Sequence[Check], numbers: Numbers) -> dict[tuple[str, str], Spot]:
-    """The search; a check that gives no finite number spoils only its own finding."""
-    active = [check for check in checks if check.applies(numbers)[0]]
-    try:
-        return search(active, numbers)
-    except FloatingPointError:
-        if len(checks) == 1:
-            return {}
-        return {key: spot for c in active for key, spot in _worst([c], numbers).items()}
 
 
 def governing(results: Sequence[Finding]) -> Finding | None:

@@ -22,6 +22,7 @@ from splitcalc.logs.allowed import (
     candidates,
     critical_turns,
     distances,
+    holds_a_log,
     joined,
     log_at,
     turn_of,
@@ -31,10 +32,12 @@ from splitcalc.thrust.frame import Log, frame_of, stations
 from splitcalc.thrust.statics import actions
 
 DISTANCES = 7  # of the coarse net, per set and state
+FINE = 65  # distances at which is looked for any log at all
 TURNS = 12  # evenly spaced turns of the coarse net, besides the critical ones
 # refining: rounds, distances and turns to try in each, how much nearer the next one looks
 ROUNDS, TRIES, SWINGS, FINER = 4, 9, 5, 4.0
-NEAR = 0.9  # a station, a point or a state this near to the worst is looked at again
+KEPT = 3  # peaks of each set that are refined
+NEAR = 0.9  # a station, a point or a peak this near to the worst is looked at again
 
 
 @dataclass(frozen=True)
@@ -78,26 +81,34 @@ def values_at(
 
 
 def search(checks: Sequence[Check], numbers: Numbers) -> dict[tuple[str, str], Spot]:
-    """The worst log for each (check id, set)."""
+    """The worst log for each (check id, set); a set that allows no log at all is left out."""
     return {(c.id, name): spot for c in checks for name, spot in _worst(c, numbers).items()}
 
 
 def _worst(check: Check, numbers: Numbers) -> dict[str, Spot]:
     """The worst log of each set for one check."""
-    spots, kept = _look(check, numbers, _coarse(numbers), slice(None))
+    nets = _coarse(numbers)
+    if not nets:
+        return {}
+    spots, kept = _look(check, numbers, nets, slice(None))
     numbers = numbers.at_point(kept.points)
     for _ in range(ROUNDS):
-        spots = [
-            spot
-            for spot in spots
-            if spot.value >= NEAR * max(s.value for s in spots if s.set == spot.set)
-        ]
-        seen, _ = _look(check, numbers, [_nearer(numbers, s) for s in spots], kept.stations)
-        spots = [
-            replace(max(pair, key=_value), reach=old.reach / FINER, swing=old.swing / FINER)
-            for old, pair in ((old, (new, old)) for old, new in zip(spots, seen, strict=True))
-        ]
+        nets = [_nearer(numbers, spot) for spot in spots]
+        seen, _ = _look(check, numbers, nets, kept.stations)
+        finer = [replace(s, reach=s.reach / FINER, swing=s.swing / FINER) for s in [*seen, *spots]]
+        spots = _best(finer)
     return {spot.set: spot for spot in sorted(spots, key=_value)}
+
+
+def _best(spots: list[Spot]) -> list[Spot]:
+    """The most promising few of each set."""
+    out: list[Spot] = []
+    for spot in sorted(spots, key=_value, reverse=True):
+        same = [s for s in out if s.set == spot.set]
+        apart = all(abs(s.log.l_AB - spot.log.l_AB) > s.reach for s in same)
+        if len(same) < KEPT and apart and (not same or spot.value >= NEAR * same[0].value):
+            out.append(spot)
+    return out
 
 
 def _value(spot: Spot) -> float:
@@ -108,11 +119,13 @@ def _coarse(numbers: Numbers) -> list[Net]:
     turns = np.linspace(0, 2 * np.pi, TURNS, endpoint=False)
     nets = []
     for set_name, state in product(SETS, STATES):
-        low, high = distances(numbers, state)
-        distance = np.linspace(low, high, DISTANCES)
-        if state == "first bite" and _within_buried(numbers, set_name, distance):
+        fine = np.linspace(*distances(numbers, state), FINE)
+        held = np.flatnonzero(holds_a_log(allowed(numbers, set_name, state, fine)))
+        if not held.size or (state == "first bite" and _within_buried(numbers, set_name, fine)):
             continue
-        reach = (high - low) / (DISTANCES - 1)
+        low, high = fine[max(held[0] - 1, 0)], fine[min(held[-1] + 1, FINE - 1)]
+        distance = np.linspace(low, high, DISTANCES)
+        reach = float(high - low) / (DISTANCES - 1)
         nets.append(Net(set_name, state, distance, turns, reach, 2 * np.pi / TURNS))
     return nets
 
@@ -143,7 +156,7 @@ def _nearer(numbers: Numbers, spot: Spot) -> Net:
 def _look(
     check: Check, numbers: Numbers, nets: Sequence[Net], kept: Any
 ) -> tuple[list[Spot], Kept]:
-    """The worst log of each net, and the stations and points that came near it."""
+    """The worst log of each net that has one, and the stations and points that came near it."""
     bounds = joined([allowed(numbers, net.set, net.state, net.distance) for net in nets])
     free = np.concatenate([np.broadcast_to(n.turns, (len(n.distance), len(n.turns))) for n in nets])
     turns = np.concatenate([critical_turns(bounds), free], axis=-1)
@@ -151,31 +164,38 @@ def _look(
     # all sections here are symmetric about z: of a log and its mirror image one is enough
     valid &= offsets[2] >= offsets[0]
     # the allowed ones to the front: rows of one length, filled up with their first
-    order = np.argsort(~valid, axis=-1, kind="stable")[:, : valid.sum(axis=-1).max()]
+    order = np.argsort(~valid, axis=-1, kind="stable")[:, : max(1, valid.sum(axis=-1).max())]
     order = np.where(np.take_along_axis(valid, order, axis=-1), order, order[:, :1])
     offsets = np.take_along_axis(offsets, order[None], axis=-1)
     values = values_at(check, numbers, log_at(offsets, bounds.distance), kept=kept)
-    tops, _ = worst_place(values)
+    tops = np.where(valid.any(axis=-1, keepdims=True), worst_place(values)[0], -np.inf)
     spots: list[Spot] = []
     near_x, near_p = np.zeros(values.shape[-2], bool), np.zeros(values.shape[-1], bool)
     end = 0
     for net in nets:
         start, end = end, end + len(net.distance)
         top = tops[start:end]
-        row, column = np.unravel_index(top.argmax(), top.shape)
-        slot = order[start + row, column]
-        near = values[start:end][top >= NEAR * top.max()] >= NEAR * top.max()
-        near_x |= near.any(axis=(0, 2))
-        near_p |= near.any(axis=(0, 1))
-        spots.append(
-            Spot(
-                net.set,
-                net.state,
-                float(top.max()),
-                Log(float(net.distance[row]), *offsets[:, start + row, column].tolist()),
-                float(turns[start + row, turn_of(slot)]),
-                net.reach,
-                net.swing,
+        near = np.greater_equal(values[start:end][top >= NEAR * top.max()], NEAR * top.max())
+        near_x |= np.any(near, axis=(0, 2))
+        near_p |= np.any(near, axis=(0, 1))
+        for row in _peaks(top.max(axis=1)):
+            column = int(top[row].argmax())
+            spots.append(
+                Spot(
+                    net.set,
+                    net.state,
+                    float(top[row, column]),
+                    Log(float(net.distance[row]), *offsets[:, start + row, column].tolist()),
+                    float(turns[start + row, turn_of(order[start + row, column])]),
+                    net.reach,
+                    net.swing,
+                )
             )
-        )
     return spots, Kept(np.flatnonzero(near_x), np.flatnonzero(near_p))
+
+
+def _peaks(values: np.ndarray) -> list[int]:
+    """Places no lower than their neighbours and near the highest; none where no log is allowed."""
+    walled = np.pad(values, 1, constant_values=-np.inf)
+    high = (values >= walled[:-2]) & (values >= walled[2:]) & (values >= NEAR * values.max())
+    return [int(k) for k in np.flatnonzero(high & (values > 0))]

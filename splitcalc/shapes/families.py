@@ -204,12 +204,10 @@ def _i_section(
     h_o, n, half = zt - zb, exact.z_c, t_w / 2
     z_hi, z_lo = d - t1 - r, t2 + r
     hi, lo, mid = (zt - z_hi) / h_o, (zt - z_lo) / h_o, (zt - n) / h_o
-    in1, in2 = 1 - t_w / b1, 1 - t_w / b2
     spots = [
         Spot("top flange, left tip", b1 / 2, d, 0, 0.0),
-        Spot("top flange, left of the web", half, d, 0, in1),
-        Spot("top flange, over the web", o, d, 0, 1.0),
-        Spot("top flange, right of the web", -half, d, 1, 1 - in1),
+        Spot("top flange, left of the web", half, d, 0, 1.0),
+        Spot("top flange, right of the web", -half, d, 1, 0.0),
         Spot("top flange, right tip", -b1 / 2, d, 1, 1.0),
         Spot("web, top, left face", half, z_hi, 2, hi),
         Spot("web, top, right face", -half, z_hi, 2, hi),
@@ -217,9 +215,8 @@ def _i_section(
         Spot("web, bottom, left face", half, z_lo, 2, lo),
         Spot("web, bottom, right face", -half, z_lo, 2, lo),
         Spot("bottom flange, left tip", b2 / 2, o, 3, 0.0),
-        Spot("bottom flange, left of the web", half, o, 3, in2),
-        Spot("bottom flange, under the web", o, o, 3, 1.0),
-        Spot("bottom flange, right of the web", -half, o, 4, 1 - in2),
+        Spot("bottom flange, left of the web", half, o, 3, 1.0),
+        Spot("bottom flange, right of the web", -half, o, 4, 0.0),
         Spot("bottom flange, right tip", -b2 / 2, o, 4, 1.0),
     ]
     return assemble(
