@@ -90,6 +90,26 @@ def holds_a_log(bounds: Range) -> np.ndarray:
     return np.asarray(np.hypot(*apart) <= bounds.slope * bounds.distance)
 
 
+def box_corners(bounds: Range) -> np.ndarray:
+    """Offsets of the box's corners, shape (4,) + distances + (16,). [m]"""
+    return np.moveaxis(bounds.ends[np.arange(4)[:, None], np.transpose(BOX)], 1, -1)
+
+
+def critical_distances(bounds: Range) -> np.ndarray:
+    """Distances between those of `bounds` at which a corner of the box comes onto the circle. [m]
+
+    The worst log likes to stand there: before it the corner is too steep, after it the slope
+    falls. By straight lines between the distances given.
+    """
+    box = box_corners(bounds)
+    radius = bounds.slope * bounds.distance
+    steep = np.hypot(box[2] - box[0], box[3] - box[1]) - radius[:, None]
+    row, corner = np.nonzero((steep[:-1] > 0) != (steep[1:] > 0))
+    before, after = steep[row, corner], steep[row + 1, corner]
+    step = bounds.distance[row + 1] - bounds.distance[row]
+    return np.asarray(np.unique(bounds.distance[row] + step * before / (before - after)))
+
+
 def joined(ranges: Sequence[Range]) -> Range:
     """Ranges behind one another."""
     return Range(*(np.concatenate(parts, axis=-1) for parts in zip(*ranges, strict=True)))
@@ -120,7 +140,7 @@ def candidates(bounds: Range, turns: np.ndarray) -> tuple[np.ndarray, np.ndarray
     -------
     offsets : shape (4,) + distances + (16 + 4 * turns,); valid : the same without the 4
     """
-    box = np.moveaxis(bounds.ends[np.arange(4)[:, None], np.transpose(BOX)], 1, -1)
+    box = box_corners(bounds)
     radius = (bounds.slope * bounds.distance)[..., None]
     box_valid = np.hypot(box[2] - box[0], box[3] - box[1]) <= radius * (1 + 1e-12)
     step = radius * np.stack([np.cos(turns), np.sin(turns)])

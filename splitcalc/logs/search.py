@@ -20,6 +20,7 @@ from splitcalc.logs.allowed import (
     STATES,
     allowed,
     candidates,
+    critical_distances,
     critical_turns,
     distances,
     holds_a_log,
@@ -31,13 +32,15 @@ from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.thrust.frame import Log, frame_of, stations
 from splitcalc.thrust.statics import actions
 
-DISTANCES = 7  # of the coarse net, per set and state
+GLANCE = 5  # distances at which all stations and stress points are looked at
+DISTANCES = 13  # of the coarse net, per set and state, besides the critical ones
 FINE = 65  # distances at which is looked for any log at all
 TURNS = 12  # evenly spaced turns of the coarse net, besides the critical ones
 # refining: rounds, distances and turns to try in each, how much nearer the next one looks
 ROUNDS, TRIES, SWINGS, FINER = 4, 9, 5, 4.0
 KEPT = 3  # peaks of each set that are refined
-NEAR = 0.9  # a station, a point or a peak this near to the worst is looked at again
+NEAR = 0.9  # a peak this near to the worst is refined
+SEEN = 0.7  # a station or a point that came this near to the worst at a glance is looked at again
 
 
 @dataclass(frozen=True)
@@ -87,11 +90,12 @@ def search(checks: Sequence[Check], numbers: Numbers) -> dict[tuple[str, str], S
 
 def _worst(check: Check, numbers: Numbers) -> dict[str, Spot]:
     """The worst log of each set for one check."""
-    nets = _coarse(numbers)
-    if not nets:
+    glance = _coarse(numbers, GLANCE, critical=False)
+    if not glance:
         return {}
-    spots, kept = _look(check, numbers, nets, slice(None))
+    _, kept = _look(check, numbers, glance, slice(None))
     numbers = numbers.at_point(kept.points)
+    spots, _ = _look(check, numbers, _coarse(numbers, DISTANCES, critical=True), kept.stations)
     for _ in range(ROUNDS):
         nets = [_nearer(numbers, spot) for spot in spots]
         seen, _ = _look(check, numbers, nets, kept.stations)
@@ -115,17 +119,21 @@ def _value(spot: Spot) -> float:
     return spot.value
 
 
-def _coarse(numbers: Numbers) -> list[Net]:
+def _coarse(numbers: Numbers, count: int, *, critical: bool) -> list[Net]:
+    """Nets of `count` even distances, with the critical ones or not, for all sets and states."""
     turns = np.linspace(0, 2 * np.pi, TURNS, endpoint=False)
     nets = []
     for set_name, state in product(SETS, STATES):
         fine = np.linspace(*distances(numbers, state), FINE)
-        held = np.flatnonzero(holds_a_log(allowed(numbers, set_name, state, fine)))
+        bounds = allowed(numbers, set_name, state, fine)
+        held = np.flatnonzero(holds_a_log(bounds))
         if not held.size or (state == "first bite" and _within_buried(numbers, set_name, fine)):
             continue
         low, high = fine[max(held[0] - 1, 0)], fine[min(held[-1] + 1, FINE - 1)]
-        distance = np.linspace(low, high, DISTANCES)
-        reach = float(high - low) / (DISTANCES - 1)
+        distance = np.linspace(low, high, count)
+        if critical:
+            distance = np.unique([*distance, *critical_distances(bounds)])
+        reach = float(high - low) / (count - 1)
         nets.append(Net(set_name, state, distance, turns, reach, 2 * np.pi / TURNS))
     return nets
 
@@ -175,7 +183,7 @@ def _look(
     for net in nets:
         start, end = end, end + len(net.distance)
         top = tops[start:end]
-        near = np.greater_equal(values[start:end][top >= NEAR * top.max()], NEAR * top.max())
+        near = np.greater_equal(values[start:end][top >= SEEN * top.max()], SEEN * top.max())
         near_x |= np.any(near, axis=(0, 2))
         near_p |= np.any(near, axis=(0, 1))
         for row in _peaks(top.max(axis=1)):

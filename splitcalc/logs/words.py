@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import textwrap
 from collections.abc import Mapping, Sequence
 from typing import Any
 
@@ -9,6 +10,7 @@ from splitcalc.findings import Finding, margin_text
 from splitcalc.logs.report import governing
 from splitcalc.units import Dimension, number, show
 
+WIDTH = 100
 LEVEL = 0.005  # slopes below this read as straight
 
 
@@ -72,7 +74,8 @@ def table(results: Sequence[Finding]) -> list[str]:
         u = f.utilisation
         if u is None or f.log is None or f.x is None:
             word = "does not apply" if not f.applies else "NOT GIVEN"
-            lines.append(f"{f.check.title:<22} {f.set:<8} {word}: {f.why}"[:100])
+            text = f"{f.check.title:<22} {f.set:<8} {word}: {f.why}"
+            lines += textwrap.wrap(text, WIDTH, subsequent_indent=" " * 32)
             continue
         kind = f.check.dimension
         where = show(f.x, Dimension.LENGTH, f.units, 3)
