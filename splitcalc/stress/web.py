@@ -23,7 +23,7 @@ from splitcalc.equations import at, equation
 from splitcalc.machine.numbers import Numbers
 from splitcalc.stress.normal_and_shear import NAVIER
 from splitcalc.stress.span import Span, influence, place, spans_between
-from splitcalc.thrust.statics import Actions
+from splitcalc.thrust.statics import Actions, tool_moment_up
 
 Array = Any
 
@@ -57,18 +57,11 @@ def web_moment(
     return -(kappa**2) * (T_1 * c_1 + T_2 * c_2 + T_t * c_t)
 
 
-@equation(gives="M_f", source="statics: the tool's moment about its root weld")
-def weld_moment(
-    *, F: Array, e: Array, b_z: Array, z_t: Array, tan_alpha: Array, x_B: Array, x_c: Array
-) -> Array:
-    return F * (e + b_z - z_t) - F * tan_alpha * (x_B - x_c)
-
-
 @equation(gives="n_m", source="linear along the weld, spread 1:1 through flange and fillet")
 def line_force_tool(
-    *, F: Array, tan_alpha: Array, M_f: Array, x: Array, x_c: Array, l_w: Array, i_t: Array
+    *, F: Array, tan_alpha: Array, M_yt: Array, x: Array, x_c: Array, l_w: Array, i_t: Array
 ) -> Array:
-    return i_t * (F * tan_alpha / l_w - 12 * M_f * (x - x_c) / l_w**3)
+    return i_t * (F * tan_alpha / l_w - 12 * M_yt * (x - x_c) / l_w**3)
 
 
 @equation(gives="n_m", source="even along the pad, spread 1:1 through flange and fillet")
@@ -104,20 +97,21 @@ def membrane_line_force(numbers: Numbers, actions: Actions) -> Array:
     c = section.t_f + section.r
     x_c = (frame.x_3 + frame.x_4) / 2
     patches = frame.patches
-    M_f = weld_moment(
-        F=frame.F,
-        e=frame.e,
-        b_z=frame.log.b_z,
-        z_t=section.z_t,
-        tan_alpha=to.tan_alpha,
-        x_B=frame.x_B,
-        x_c=x_c,
-    )
+    with at("fixed tool, at the sliding face"):
+        M_yt = tool_moment_up(
+            F=frame.F,
+            e=frame.e,
+            b_z=frame.log.b_z,
+            z_o=section.z_t,
+            tan_alpha=to.tan_alpha,
+            x_B=frame.x_B,
+            x_c=x_c,
+        )
     with at("fixed tool"):
         tool = line_force_tool(
             F=frame.F,
             tan_alpha=to.tan_alpha,
-            M_f=M_f,
+            M_yt=M_yt,
             x=actions.x,
             x_c=x_c,
             l_w=frame.x_4 - frame.x_3 + 2 * c,
