@@ -312,7 +312,7 @@ def test_error_in_a_slice_is_shown(loop_runs: bool) -> None:
 # Controls
 
 OFFSET: dict[str, Any] = {
-    "label": "Offset of the thrust",
+    "label": "Thrust offset",
     "unit": "mm",
     "value": 150.0,
     "low": 50.0,
@@ -325,7 +325,7 @@ OFFSET: dict[str, Any] = {
 
 def test_slider_shows_label_unit_and_digits() -> None:
     control = slider(**OFFSET)
-    assert control.description == "Offset of the thrust (mm)"
+    assert control.description == "Thrust offset (mm)"
     assert control.readout_format == ".1f"
     assert (control.min, control.value, control.max, control.step) == (50.0, 150.0, 300.0, 0.5)
     assert control.continuous_update
