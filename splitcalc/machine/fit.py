@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
+from typing import Any
 
 from splitcalc.inputs import Entry, Problem
 from splitcalc.machine.document import Beam, Document, Sled
@@ -12,15 +13,16 @@ PADS = ("front_pad", "rear_pad", "pad_length")
 GUIDE = ("guide_front", "guide_length")
 
 
-def pads_of(sled: Sled) -> tuple[float, float, float]:
+def pads_of(guide: str, get: Callable[[str], Any]) -> tuple[Any, Any, Any]:
     """(rear, front, length) of the two pads, from the moving face back. [m]
 
-    A continuous guide counts as two pads, each a third of its length, at its ends.
+    A continuous guide counts as two pads, each a third of its length, at its ends. `get` gives
+    the value of a key of the sled.
     """
-    if sled.guide == "continuous":
-        front, length = (getattr(sled, key).si for key in GUIDE)
+    if guide == "continuous":
+        front, length = (get(key) for key in GUIDE)
         return front + length * 5 / 6, front + length / 6, length / 3
-    front, rear, length = (getattr(sled, key).si for key in PADS)
+    front, rear, length = (get(key) for key in PADS)
     return rear, front, length
 
 
@@ -184,7 +186,7 @@ def _sled(doc: Document) -> Found:
             yield f"sled.{key}", f'not used with guide = "{sled.guide}"; take it out'
     if missing:
         return
-    rear, front, length = pads_of(sled)
+    rear, front, length = pads_of(sled.guide, lambda key: getattr(sled, key).si)
     if rear - front < length:
         yield (
             f"sled.{wanted[1]}",

@@ -121,7 +121,11 @@ def numbers_of(document: Document, overrides: Overrides | None = None) -> Number
 
 def _numbers(document: Document, overrides: Overrides | None) -> Numbers:
     overrides = dict(overrides or {})
-    known = {key: value for key, fact, value in walk(document) if fact.dimension is not None}
+    known = {
+        key: value
+        for key, fact, value in walk(document)
+        if fact.dimension is not None and "[" not in key  # places in a list are no samples
+    }
     for key in overrides:
         if key not in known:
             raise KeyError(f"{key} is not a number of the machine; known: {', '.join(known)}")
@@ -165,7 +169,7 @@ def _numbers(document: Document, overrides: Overrides | None) -> Numbers:
     usual = get("factors.yield_usual")
     bottom = get(f"{wedge_key}.bottom") - height
     tall = get(f"{wedge_key}.height")
-    rear, front, length = _pads(document, get)
+    rear, front, length = pads_of(document.sled.guide, lambda key: get(f"sled.{key}"))
     return Numbers(
         F=F,
         e=axis_eccentricity(z_t=section.z_t, h_a=height),
@@ -239,12 +243,6 @@ def _section(document: Document, overrides: Overrides) -> Section:
 
 def _point_axis(value: np.ndarray) -> np.ndarray:
     return value if value.ndim == 1 else value[..., None, :]
-
-
-def _pads(document: Document, get: Any) -> tuple[Array, Array, Array]:
-    if document.sled.guide == "continuous":
-        return pads_of(document.sled)
-    return get("sled.rear_pad"), get("sled.front_pad"), get("sled.pad_length")
 
 
 def _contact(get: Any, key: str, tool: Tool | FixedTool, axis: Array) -> Contact:

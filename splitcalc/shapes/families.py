@@ -52,7 +52,10 @@ class RolledI:
 
     @staticmethod
     def misfits(v: Values) -> list[str]:
-        return _i_misfits(v["d"], (v["b_f"], v["t_f"]), (v["b_f"], v["t_f"]), v["t_w"], v["r"])
+        out = _i_misfits(v["d"], (v["b_f"], v["t_f"]), (v["b_f"], v["t_f"]), v["t_w"], v["r"])
+        if v["t_w"] > v["t_f"]:
+            out.append("t_w: more than t_f, where the torsion formula of rolled shapes ends")
+        return out
 
 
 @dataclass(frozen=True)

@@ -130,13 +130,15 @@ def distortion_share(numbers: Numbers, actions: Actions) -> Array:
     can stand under the travelling sled.
     """
     reach = DISTORTION_REACH * numbers.section.h
-    near: Array = np.zeros(np.shape(actions.x), dtype=bool)
-    places = ["rear pad", "front pad"]
-    if not any(numbers.x_3 <= x <= numbers.x_4 for x in numbers.diaphragms):
-        places.append("fixed tool")
-    for place in places:
-        start, end = actions.frame.patches[place]
-        near = near | ((actions.x >= start - reach) & (actions.x <= end + reach))
+    near: Array = False
+    for place, (start, end) in actions.frame.patches.items():
+        if place == "mount":
+            continue
+        within = (actions.x >= start - reach) & (actions.x <= end + reach)
+        if place == "fixed tool":
+            for x in numbers.diaphragms:
+                within = within & ~((x >= start) & (x <= end))
+        near = near | within
     return DISTORTION_SHARE * near
 
 
