@@ -227,14 +227,10 @@ def test_the_walker_brackets_what_needs_it(node):
 # --- the recorder ---------------------------------------------------------------------------------
 
 
-def equation_of(name):
-    return next(e for key, e in EQUATIONS.items() if key.endswith(f".{name}"))
-
-
 def called(name):
     """The marked function, as the core calls it."""
-    equation = equation_of(name)
-    return getattr(importlib.import_module(equation.function.__module__), name)
+    info = next(e for key, e in EQUATIONS.items() if key.endswith(f".{name}"))
+    return getattr(importlib.import_module(info.function.__module__), name)
 
 
 def test_nothing_is_recorded_outside():
@@ -311,9 +307,7 @@ FINAL = {"beam-first-yield": "sigma_v", "web-cross-bending": "sigma_q"}
 
 
 def test_the_replay_gives_the_number_of_the_finding(demo):
-    _, results = demo
-    assert results
-    for finding in results:
+    for finding in demo[1]:
         last = FINAL[finding.check.id]
         replayed = [line.result for line in finding.lines if line.equation.gives == last]
         assert max(map(float, replayed)) == pytest.approx(finding.demand, rel=1e-12)
@@ -330,8 +324,7 @@ def test_the_finding_is_at_least_what_the_search_saw(demo):
 
 
 def test_every_step_of_a_replay_ends_in_its_own_result(demo):
-    _, results = demo
-    for finding in results:
+    for finding in demo[1]:
         for line in finding.lines:
             assert render.steps(line)[-1][2] == pytest.approx(
                 float(np.asarray(line.result).item()), rel=1e-12, abs=1e-300
@@ -401,7 +394,7 @@ def test_printed_numbers_give_the_printed_result(demo, system):
 
 
 def test_a_line_of_one_element_arrays_prints_like_one_of_floats():
-    equation = equation_of("st_venant_torque")
+    equation = called("st_venant_torque").equation
     plain = Line(equation, {"T": 3e3, "T_w": 1e3}, 2e3, "rear pad")
     boxed = Line(equation, {"T": np.array([[3e3]]), "T_w": np.array(1e3)}, np.array([[2e3]]), "")
     assert render.lines_of_text(plain, "si") == ["[rear pad]", *render.lines_of_text(boxed, "si")]

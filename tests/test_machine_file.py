@@ -136,6 +136,8 @@ def test_a_section_from_the_tables_is_the_same_as_its_dimensions_typed_out():
 
 # --- files that can't be used -------------------------------------------------------------------
 
+THICK = """shape = "plate I"
+d = "12 in"\nb_t = "10 in"\nt_t = "2 in"\nb_b = "10 in"\nt_b = "2 in"\nt_w = "1 in" """
 ROLLED = {"d": "200 mm", "b_f": "200 mm", "t_f": "15 mm", "t_w": "9 mm", "r": "18 mm"}
 ZONE = '\n[[beam.closed_zones]]\nstart = "{}"\nend = "{}"\nkind = "side plates"\n'
 STIFFENERS = US[US.index("[[beam.stiffeners]]") : US.index("[moving_tool]")]
@@ -157,9 +159,8 @@ def us(old, new):
 WRONG = {
     # name: (text of the file, key that must be named, phrases that its message must have)
     "unknown key, near": (us("bore =", "boar ="), "cylinder.boar", ['did you mean "bore"?']),
-    "unknown key": (
-        us("bore =", 'colour = "red"\nbore ='), "cylinder.colour", ["unknown key", "relief_press"],
-    ),
+    "unknown key": (us("bore =", 'colour = "red"\nbore ='),
+        "cylinder.colour", ["unknown key", "relief_press"]),
     "unknown table": (US + '[paint]\ncoat = "red"\n', "paint", ["unknown key", "sled, logs"]),
     "unknown table, near": (us("[sled]", "[sledge]"), "sledge", ['did you mean "sled"?']),
     "missing table": (us("[sled]", "[sledge]"), "sled", ["missing", "[sled]"]),
@@ -170,40 +171,32 @@ WRONG = {
     "true for a number": (us('"4 1/2 in"', "true"), "cylinder.bore", ["rue", " in"]),
     "list for a number": (us('"4 1/2 in"', '["4 in"]'), "cylinder.bore", ["bore", " in"]),
     "number for text": (us('"HF-25"', "25"), "job.number", ["25", "in quotes"]),
-    "text for a table": (
-        'logs = "any"\n' + US[: US.index("[logs]")], "logs", ["any", "a table is wanted"],
-    ),
+    "text for a table": ('logs = "any"\n' + US[: US.index("[logs]")],
+        "logs", ["any", "a table is wanted"]),
     "list for a table": (us("[logs]", "[[logs]]"), "logs", ["a table is wanted"]),
     "table for a list": (
         changed(US, (STIFFENERS, '[beam.stiffeners]\nx = "58 in"\nkind = "diaphragm"\n')),
-        "beam.stiffeners", ["[[", "stiffeners]]"],
-    ),
-    "text for a list": (
-        changed(US, (STIFFENERS, ""), ('"76 in"', '"76 in"\nstiffeners = "none"')),
-        "beam.stiffeners", ["[[", "stiffeners]]"],
-    ),
-    "unknown key in a list": (
-        us('x = "69 1/2 in"', 'at = "69 1/2 in"'), "beam.stiffeners[2].at", ["x, kind"],
-    ),
+        "beam.stiffeners", ["[[", "stiffeners]]"]),
+    "text for a list": (changed(US, (STIFFENERS, ""), ('"76 in"', '"76 in"\nstiffeners = "none"')),
+        "beam.stiffeners", ["[[", "stiffeners]]"]),
+    "unknown key in a list": (us('x = "69 1/2 in"', 'at = "69 1/2 in"'),
+        "beam.stiffeners[2].at", ["x, kind"]),
     "bare number": (us('"4 1/2 in"', "4.5"), "cylinder.bore", ["no unit", "mm, cm, m, in, ft"]),
     "no unit": (us('"4 1/2 in"', '"4.5"'), "cylinder.bore", ["no unit", "mm, cm, m, in, ft"]),
     "nan": (us('"4 1/2 in"', "nan"), "cylinder.bore", ["nan", "no number"]),
-    "ton": (
-        us('"2850 psi"', '"25 ton"'), "cylinder.relief_pressure", ["several things", "bar, MPa"],
-    ),
+    "ton": (us('"2850 psi"', '"25 ton"'),
+        "cylinder.relief_pressure", ["several things", "bar, MPa"]),
     "comma": (us('"4 1/2 in"', '"4,5 in"'), "cylinder.bore", ["comma", "decimal point"]),
     "other kind of unit": (us('"4 1/2 in"', '"4 psi"'), "cylinder.bore", ["not a length"]),
     "too large": (us('"4 1/2 in"', '"45 in"'), "cylinder.bore", ['"45 in"', " to 19.69"]),
-    "too large, mm": (
-        changed(SI, ('"110 mm"', '"1100 mm"')), "cylinder.bore", ['"1100 mm"', "20", " to 500"],
-    ),
+    "too large, mm": (changed(SI, ('"110 mm"', '"1100 mm"')),
+        "cylinder.bore", ['"1100 mm"', "20", " to 500"]),
     "too small": (US + "[factors]\nsurge = 0.9\n", "factors.surge", ['"0.9"', "1 to 2"]),
     "choice, near": (us('"plain"', '"plane"'), "moving_tool.grip", ['"worn"', 'mean "plain"?']),
     "choice": (us('"rear pin"', '"glue"'), "cylinder.mount", ['"glue"', '"trunnion"']),
     "steel": (us('"A992"', '"A998"'), "beam.steel", ['"S355"', 'mean "A992"?']),
-    "section not in the tables": (
-        us("W8x67", "W8x68"), "beam.section", ["not in the tables", "near: W8x67", "plate box"],
-    ),
+    "section not in the tables": (us("W8x67", "W8x68"),
+        "beam.section", ["not in the tables", "near: W8x67", "plate box"]),
     "section as a number": (us('"W8x67"', "8"), "beam.section", ["8", "a section's name"]),
     "wrong shape": (rolled(shape="rolled H"), "beam.section", ["rolled H", "rolled I, plate I"]),
     "no shape": (rolled(shape=""), "beam.section", ["shape", "rolled I, plate I"]),
@@ -212,131 +205,77 @@ WRONG = {
     "wall out of range": (rolled(t_w="0.2 mm"), "beam.section.t_w", ['"0.2 mm"', "1", " to 100"]),
     "no web left": (rolled(t_f="80 mm"), "beam.section.d", ["less than a fifth of the depth"]),
     "web wider than flange": (rolled(t_w="95 mm"), "beam.section.t_w", ["narrower"]),
-    "web far thicker than the flanges": (
-        # the torsion formula of rolled shapes ends before: its J is below zero here
-        rolled(t_w="70 mm", r="0 mm"),
-        "beam.section.t_w",
-        ["t_f"],
-    ),
+    # the torsion formula of rolled shapes ends before: its J is below zero here
+    "web far thicker than the flanges": (rolled(t_w="70 mm", r="0 mm"),
+        "beam.section.t_w", ["t_f"]),
     "no flat wall": (
         with_section('shape = "hollow"\nH = "2 in"\nB = "2 in"\nT = "1/2 in"\nmade_to = "A500"'),
-        "beam.section.T", ["no flat wall", "2·r + T"],
-    ),
-    "box plate narrower than its webs": (
-        changed(SI, ('b_t = "220 mm"', 'b_t = "150 mm"')), "beam.section.b_t", ["as wide as c"],
-    ),
-    "box webs touch": (
-        changed(SI, ('c = "170 mm"', 'c = "33 mm"')), "beam.section.c", ["at least 3·t_w"],
-    ),
-    "steel too thick": (
-        changed(
-            with_section(
-                'shape = "plate I"\nd = "12 in"\nb_t = "10 in"\nt_t = "2 in"\nb_b = "10 in"\n'
-                't_b = "2 in"\nt_w = "1 in"'
-            ),
-            ('"A992"', '"A500B"'),
-        ),
-        "beam.steel", ["A500B", "give beam.yield_strength"],
-    ),
-    "both tools wedge": (
-        us('"push plate"', '"wedge"'), "fixed_tool.kind", ['both tools are "wedge"', "one must"],
-    ),
-    "both tools plate": (
-        us('"wedge"', '"push plate"'), "fixed_tool.kind", ['both tools are "push plate"'],
-    ),
-    "contact above the tool": (
-        us('grip = "plain"', 'contact_high = "7 in"'),
-        "moving_tool.contact_high", ['"7 in"', "on the tool"],
-    ),
-    "contact below the tool": (
-        us('grip = "plain"', 'contact_low = "1/4 in"'),
-        "moving_tool.contact_low", ['"1/4 in"', "on the tool"],
-    ),
-    "contact beside the plate": (
-        us('grip = "plain"', 'contact_half_width = "3 1/2 in"'),
-        "moving_tool.contact_half_width", ["more than half of the width", '"6 in"'],
-    ),
-    "log longer than the opening": (
-        us('longest = "24 in"', 'longest = "26 in"'), "logs.longest", ["smallest_gap + stroke"],
-    ),
-    "shortest over longest": (
-        us('shortest = "10 in"', 'shortest = "25 in"'), "logs.shortest", ["more than longest"],
-    ),
-    "gap over shortest": (
-        us('smallest_gap = "1 in"', 'smallest_gap = "11 in"'),
-        "logs.smallest_gap", ["never reaches the shortest log", '"10 in"'],
-    ),
-    "thinnest over thickest": (
-        us("[logs]", '[logs]\nsmallest_diameter = "21 in"'),
-        "logs.smallest_diameter", ["more than largest_diameter"],
-    ),
-    "cylinder does not fit": (
-        us('edge_x = "57 in"', 'edge_x = "45 in"'), "cylinder.stroke", ["does not fit", "edge_x"],
-    ),
+        "beam.section.T", ["no flat wall", "2·r + T"]),
+    "box plate narrower than its webs": (changed(SI, ('b_t = "220 mm"', 'b_t = "150 mm"')),
+        "beam.section.b_t", ["as wide as c"]),
+    "box webs touch": (changed(SI, ('c = "170 mm"', 'c = "33 mm"')),
+        "beam.section.c", ["at least 3·t_w"]),
+    "steel too thick": (changed(with_section(THICK), ('"A992"', '"A500B"')),
+        "beam.steel", ["A500B", "give beam.yield_strength"]),
+    "both tools wedge": (us('"push plate"', '"wedge"'),
+        "fixed_tool.kind", ['both tools are "wedge"', "one must"]),
+    "both tools plate": (us('"wedge"', '"push plate"'),
+        "fixed_tool.kind", ['both tools are "push plate"']),
+    "contact above the tool": (us('grip = "plain"', 'contact_high = "7 in"'),
+        "moving_tool.contact_high", ['"7 in"', "on the tool"]),
+    "contact below the tool": (us('grip = "plain"', 'contact_low = "1/4 in"'),
+        "moving_tool.contact_low", ['"1/4 in"', "on the tool"]),
+    "contact beside the plate": (us('grip = "plain"', 'contact_half_width = "3 1/2 in"'),
+        "moving_tool.contact_half_width", ["more than half of the width", '"6 in"']),
+    "log longer than the opening": (us('longest = "24 in"', 'longest = "26 in"'),
+        "logs.longest", ["smallest_gap + stroke"]),
+    "shortest over longest": (us('shortest = "10 in"', 'shortest = "25 in"'),
+        "logs.shortest", ["more than longest"]),
+    "gap over shortest": (us('smallest_gap = "1 in"', 'smallest_gap = "11 in"'),
+        "logs.smallest_gap", ["never reaches the shortest log", '"10 in"']),
+    "thinnest over thickest": (us("[logs]", '[logs]\nsmallest_diameter = "21 in"'),
+        "logs.smallest_diameter", ["more than largest_diameter"]),
+    "cylinder does not fit": (us('edge_x = "57 in"', 'edge_x = "45 in"'),
+        "cylinder.stroke", ["does not fit", "edge_x"]),
     "face behind the beam": (
         changed(US, ('edge_x = "57 in"', 'edge_x = "20 in"'), ('"rear pin"', '"trunnion"')),
-        "fixed_tool.edge_x", ["behind the beam's rear end"],
-    ),
-    "rod as thick as the bore": (
-        us('rod = "2 1/4 in"', 'rod = "4 1/2 in"'), "cylinder.rod", ["less than the bore"],
-    ),
-    "beam ends before it starts": (
-        us('front_end = "76 in"', 'front_end = "-4 in"'), "beam.front_end", ["ahead of", '"-3 in"'],
-    ),
-    "weld ends before it starts": (
-        us('weld_end = "70 in"', 'weld_end = "57 1/2 in"'),
-        "fixed_tool.weld_end", ["ahead of weld_start", '"58 in"'],
-    ),
-    "weld off the beam": (
-        us('weld_end = "70 in"', 'weld_end = "77 in"'),
-        "fixed_tool.weld_end", ["on the beam", '"-3 in" to "76 in"'],
-    ),
-    "stiffener off the beam": (
-        us('x = "69 1/2 in"', 'x = "80 in"'), "beam.stiffeners[2].x", ["on the beam", '"76 in"'],
-    ),
-    "stiffener for a box": (
-        us('"full-depth pair"', '"diaphragm"'),
-        "beam.stiffeners[1].kind", ["rolled I", "full-depth pair, part-depth pair"],
-    ),
-    "stiffener for an I": (
-        changed(SI, ('"diaphragm"', '"full-depth pair"')),
-        "beam.stiffeners[1].kind", ["plate box", "allowed: diaphragm"],
-    ),
-    "closed stretch too short": (
-        US + ZONE.format("50 in", "54 in"), "beam.closed_zones[1]", ["shorter than the section"],
-    ),
-    "closed stretches overlap": (
-        US + ZONE.format("30 in", "40 in") + ZONE.format("39 in", "50 in"),
-        "beam.closed_zones[2]", ["in order and apart"],
-    ),
-    "closed stretch of a closed section": (
-        SI + ZONE.format("500 mm", "900 mm"), "beam.closed_zones[1]", ["closed already"],
-    ),
-    "rod alone": (
-        us("[sled]", '[sled]\nguide = "rod alone"'), "sled.guide", ["method does not apply"],
-    ),
+        "fixed_tool.edge_x", ["behind the beam's rear end"]),
+    "rod as thick as the bore": (us('rod = "2 1/4 in"', 'rod = "4 1/2 in"'),
+        "cylinder.rod", ["less than the bore"]),
+    "beam ends before it starts": (us('front_end = "76 in"', 'front_end = "-4 in"'),
+        "beam.front_end", ["ahead of", '"-3 in"']),
+    "weld ends before it starts": (us('weld_end = "70 in"', 'weld_end = "57 1/2 in"'),
+        "fixed_tool.weld_end", ["ahead of weld_start", '"58 in"']),
+    "weld off the beam": (us('weld_end = "70 in"', 'weld_end = "77 in"'),
+        "fixed_tool.weld_end", ["on the beam", '"-3 in" to "76 in"']),
+    "stiffener off the beam": (us('x = "69 1/2 in"', 'x = "80 in"'),
+        "beam.stiffeners[2].x", ["on the beam", '"76 in"']),
+    "stiffener for a box": (us('"full-depth pair"', '"diaphragm"'),
+        "beam.stiffeners[1].kind", ["rolled I", "full-depth pair, part-depth pair"]),
+    "stiffener for an I": (changed(SI, ('"diaphragm"', '"full-depth pair"')),
+        "beam.stiffeners[1].kind", ["plate box", "allowed: diaphragm"]),
+    "closed stretch too short": (US + ZONE.format("50 in", "54 in"),
+        "beam.closed_zones[1]", ["shorter than the section"]),
+    "closed stretches overlap": (US + ZONE.format("30 in", "40 in") + ZONE.format("39 in", "50 in"),
+        "beam.closed_zones[2]", ["in order and apart"]),
+    "closed stretch of a closed section": (SI + ZONE.format("500 mm", "900 mm"),
+        "beam.closed_zones[1]", ["closed already"]),
+    "rod alone": (us("[sled]", '[sled]\nguide = "rod alone"'),
+        "sled.guide", ["method does not apply"]),
     "continuous guide with pads": (
         us("[sled]", '[sled]\nguide = "continuous"\nguide_front = "1 in"\nguide_length = "12 in"'),
-        "sled.pad_length", ['not used with guide = "continuous"'],
-    ),
-    "continuous guide without length": (
-        us("[sled]", '[sled]\nguide = "continuous"'), "sled.guide_length", ["missing"],
-    ),
+        "sled.pad_length", ['not used with guide = "continuous"']),
+    "continuous guide without length": (us("[sled]", '[sled]\nguide = "continuous"'),
+        "sled.guide_length", ["missing"]),
     "pads without a place": (us('front_pad = "2 in"\n', ""), "sled.front_pad", ["two pads"]),
-    "pads overlap": (
-        us('rear_pad = "11 in"', 'rear_pad = "4 in"'), "sled.rear_pad", ["overlap", "at least"],
-    ),
-    "front pad past the weld": (
-        us('front_pad = "2 in"', 'front_pad = "-1 in"'),
-        "sled.front_pad", ["at full stroke", "root weld", '"58 in"'],
-    ),
-    "rear pad behind the beam": (
-        us('rear_pad = "11 in"', 'rear_pad = "40 in"'), "sled.rear_pad", ["beam's rear end"],
-    ),
-    "strip off the flange": (
-        us('push_strip = "3 in"', 'push_strip = "5 in"'),
-        "sled.push_strip", ["off the flange", "half width"],
-    ),
+    "pads overlap": (us('rear_pad = "11 in"', 'rear_pad = "4 in"'),
+        "sled.rear_pad", ["overlap", "at least"]),
+    "front pad past the weld": (us('front_pad = "2 in"', 'front_pad = "-1 in"'),
+        "sled.front_pad", ["at full stroke", "root weld", '"58 in"']),
+    "rear pad behind the beam": (us('rear_pad = "11 in"', 'rear_pad = "40 in"'),
+        "sled.rear_pad", ["beam's rear end"]),
+    "strip off the flange": (us('push_strip = "3 in"', 'push_strip = "5 in"'),
+        "sled.push_strip", ["off the flange", "half width"]),
     "not TOML": (us('"2 1/4 in"', "2 1/4 in"), "file", ["not TOML", "line 18"]),
     "duplicate key": (us("rod =", 'rod = "2 in"\nrod ='), "file", ["not TOML", "line 19"]),
     "duplicate table": (US + "[logs]\n", "file", ["not TOML", f"line {US.count(chr(10)) + 1}"]),
@@ -349,20 +288,15 @@ WRONG = {
 
 
 @pytest.mark.parametrize("case", WRONG, ids=lambda case: case.replace(" ", "-"))
-def test_a_wrong_file_is_told_by_key_and_cure(case):
+def test_a_wrong_file_is_told_by_key_and_cure_without_python(case):
     text, key, phrases = WRONG[case]
     error = refused(text)
     told = [problem.message for problem in error.problems if problem.key == key]
     assert told, str(error)
     assert all(phrase in told[0] for phrase in phrases), told[0]
-
-
-@pytest.mark.parametrize("case", WRONG, ids=lambda case: case.replace(" ", "-"))
-def test_no_message_speaks_python(case):
-    text = str(refused(WRONG[case][0]))
-    assert text.startswith("the machine file can't be used: ")
-    for word in ("None", "NoneType", "{'", "datetime", "<class", '"required"', "Entry(", "dict"):
-        assert word not in text
+    assert str(error).startswith("the machine file can't be used: ")
+    for word in ("None", "{'", "datetime", "<class", '"required"', "Entry(", "dict"):
+        assert word not in str(error)
 
 
 def test_problems_of_one_file_are_told_together():

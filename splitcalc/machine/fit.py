@@ -6,7 +6,7 @@ from collections.abc import Callable, Iterator
 from typing import Any
 
 from splitcalc.inputs import Entry, Problem
-from splitcalc.machine.document import Beam, Document, Sled
+from splitcalc.machine.document import Beam, Document
 from splitcalc.materials import STEELS
 
 PADS = ("front_pad", "rear_pad", "pad_length")
