@@ -60,12 +60,9 @@ def test_a_flip_changes_its_sign_alone() -> None:
 
 def test_there_are_signs_to_flip_and_the_excused_ones_still_stand() -> None:
     assert len(FLIPS) > 300
-    lines = {(path, code) for path, code in SAME}
-    assert lines == {
-        (path, code)
-        for path, code in lines
-        if code in (line.strip() for line in (ROOT / path).read_text("utf-8").splitlines())
-    }
+    for path, code in SAME:
+        lines = (ROOT / path).read_text("utf-8").splitlines()
+        assert code in [line.strip() for line in lines]
 
 
 @pytest.mark.slow

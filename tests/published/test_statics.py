@@ -13,7 +13,7 @@ import numpy as np
 import pytest
 
 from splitcalc.thrust.frame import Frame
-from splitcalc.thrust.statics import Actions, actions, reactions, six_sums
+from splitcalc.thrust.statics import Actions, actions, reactions, six_sums, tool_moment_up
 
 CASES = tomllib.loads(Path(__file__).with_name("statics.toml").read_text("utf-8"))["case"]
 every_case = pytest.mark.parametrize("case", CASES, ids=[case["name"] for case in CASES])
@@ -57,6 +57,21 @@ def test_forces_and_moments_on_the_beam_balance(case: dict[str, Any]) -> None:
     for r_2 in (1.0, 0.5, 0.0):
         frame = replace(Frame.from_points(**case["frame"]), r_2=r_2)
         assert six_sums(frame) == pytest.approx(np.zeros(6), abs=1e-9 * case["frame"]["F"])
+
+
+def test_moment_of_the_thrust_about_a_point_above_the_axis() -> None:
+    """r x F with r from (0.93, 0.05) to (1.0, 0.13), F = (100, -6) kN, by hand: 8.42 kN·m."""
+    moment = tool_moment_up(
+        F=100e3, e=0.15, b_z=-0.02, z_o=0.05, tan_alpha=-0.06, x_B=1.0, x_c=0.93
+    )
+    assert moment == pytest.approx(8.42e3, rel=1e-12)
+
+
+def test_a_tool_that_starts_on_the_front_pad_is_refused() -> None:
+    points = CASES[1]["frame"] | {"pad_length": 0.1}
+    Frame.from_points(**points | {"tool": [0.45, 1.0]})
+    with pytest.raises(ValueError, match="tool needs a start ahead of the front pad"):
+        Frame.from_points(**points | {"tool": [0.44, 1.0]})
 
 
 # --- SymPy ---------------------------------------------------------------------------------------

@@ -158,9 +158,10 @@ def test_roll_at_the_sled_against_solid_elements() -> None:
 # --- stresses beside it --------------------------------------------------------------------------
 
 
-def test_force_across_the_web_carries_pads_and_tool() -> None:
-    numbers = web_machine(SKEW_I, -0.1, 1.3)
-    to, c = reactions(SPREAD), SKEW_I.t_f + SKEW_I.r
+@pytest.mark.parametrize("section", [SKEW_I, W8X31], ids=["plates", "with fillets"])
+def test_force_across_the_web_carries_pads_and_tool(section: Section) -> None:
+    numbers = web_machine(section, -0.1, 1.3)
+    to, c = reactions(SPREAD), section.t_f + section.r
     for first, last, force in ((0.22, 0.28, to.Z_1), (0.37, 0.43, to.Z_2)):
         x = np.linspace(first - c, last + c, 11)
         n_m = membrane_line_force(numbers, actions(SPREAD, x[:, None]))[:, 0]
@@ -170,7 +171,7 @@ def test_force_across_the_web_carries_pads_and_tool() -> None:
     lift = SPREAD.F * to.tan_alpha
     assert trapezoid(n_m, x) == pytest.approx(lift, rel=1e-9)
     # moment of the thrust about the weld's middle, on the flange's top face: z F - x lift
-    moment = (SPREAD.e + SPREAD.log.b_z - SKEW_I.z_t) * SPREAD.F - (1.0 - 1.03) * lift
+    moment = (SPREAD.e + SPREAD.log.b_z - section.z_t) * SPREAD.F - (1.0 - 1.03) * lift
     assert -trapezoid(n_m * (x - 1.03), x) == pytest.approx(moment, rel=1e-5)
     off = np.array([[0.21 - c], [0.29 + c], [0.44 + c], [0.95 - c], [1.11 + c]])
     assert not membrane_line_force(numbers, actions(SPREAD, off)).any()
