@@ -9,7 +9,7 @@ import pytest
 
 from splitcalc.checks import ALL
 from splitcalc.findings import worst_place
-from splitcalc.logs.allowed import STATES, allowed, distances
+from splitcalc.logs.allowed import BURIED, SHARE, STATES, allowed, distances
 from splitcalc.logs.present import narrowest_set
 from splitcalc.logs.report import PER_STRETCH, findings
 from splitcalc.logs.search import search, values_at
@@ -291,7 +291,7 @@ def test_the_ranges_are_those_of_the_rules(machine):
                 numbers.longest,
             )
             for l_AB in np.linspace(low, high, 5):
-                bounds = allowed(numbers, set_name, state, np.array(l_AB))
+                bounds = allowed(numbers, SHARE[set_name], state == BURIED, np.array(l_AB))
                 ranges, steepest = contact_ranges(numbers, set_name, state, l_AB)
                 assert float(bounds.slope) == pytest.approx(steepest, rel=1e-14)
                 np.testing.assert_allclose(bounds.ends, ranges, rtol=1e-12, atol=1e-15)
@@ -312,7 +312,7 @@ def test_ranges_of_the_us_demo_by_hand():
     assert (numbers.fixed.low, numbers.fixed.high) == pytest.approx((-0.0889, 0.0889), rel=1e-12)
     assert numbers.grip == 0.35
     # 12 in buried: 1/2 in + 8 MPa · 7 in · (12 in)^2 / (4 F)
-    bounds = allowed(numbers, "extreme", "buried", np.array(12 * 0.0254))
+    bounds = allowed(numbers, 1.0, True, np.array(12 * 0.0254))
     aside = 0.0127 + 8e6 * 7 * 0.0254 * (12 * 0.0254) ** 2 / (4 * F)
     assert bounds.ends[2, 1] == pytest.approx(aside, rel=1e-9)
 

@@ -16,16 +16,15 @@ ones, where the rectangle changes its sides.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from itertools import product
 from typing import NamedTuple
 
 import numpy as np
 
 from splitcalc.machine.numbers import Contact, Numbers
-from splitcalc.thrust.frame import Log
+from splitcalc.thrust.frame import Array, Log
 
-STATES = ("first bite", "buried")
+FIRST_BITE, BURIED = STATES = ("first bite", "buried")
 # What the sets of logs take for granted; printed with every calculation.
 ASSUMPTIONS = (
     "the log carries force along the line between its two contacts alone; sled friction, which "
@@ -56,31 +55,35 @@ class Range(NamedTuple):
 
 def distances(numbers: Numbers, state: str) -> tuple[float, float]:
     """Least and largest distance of the contact points. [m]"""
-    least = numbers.shortest if state == "first bite" else numbers.gap
+    least = numbers.gap if state == BURIED else numbers.shortest
     return float(least), float(numbers.longest)
 
 
-def allowed(numbers: Numbers, set_name: str, state: str, distance: np.ndarray) -> Range:
-    """Bounds of the contact offsets at each distance."""
-    moving, fixed = numbers.moving, numbers.fixed
-    if state == "buried":
-        buried = numbers.longest - distance
-        aside = numbers.f_90 * numbers.h_wedge * buried**2 / (4 * numbers.F)
-        wedge = Contact(numbers.t_wedge / 2 + aside, numbers.wedge.low, numbers.wedge.high)
-        moving, fixed = (wedge, fixed) if numbers.wedge_moves else (moving, wedge)
-    share = SHARE[set_name]
+def allowed(numbers: Numbers, share: Array, buried: Array, distance: np.ndarray) -> Range:
+    """Bounds of the contact offsets at each distance.
+
+    Parameters
+    ----------
+    share : of each contact range and of the grip, see `SHARE`; one for all or one a distance
+    buried : whether the log is buried, else it is at first bite; likewise
+    """
+    depth = buried * (numbers.longest - distance)
+    aside = numbers.f_90 * numbers.h_wedge * depth**2 / (4 * numbers.F)
+    wedge = Contact(numbers.t_wedge / 2 + aside, numbers.wedge.low, numbers.wedge.high)
     ends = np.empty((4, 2, *distance.shape))
-    for k, (low, high) in enumerate(
-        (
-            (-moving.half_width, moving.half_width),
-            (moving.low, moving.high),
-            (-fixed.half_width, fixed.half_width),
-            (fixed.low, fixed.high),
-        )
+    for k, contact, is_wedge in (
+        (0, numbers.moving, numbers.wedge_moves),
+        (2, numbers.fixed, not numbers.wedge_moves),
     ):
+        inside = buried & np.bool_(is_wedge)
+        half_width, low, high = (
+            np.where(inside, getattr(wedge, name), getattr(contact, name))
+            for name in ("half_width", "low", "high")
+        )
         middle, half = (low + high) / 2, share * (high - low) / 2
-        ends[k, 0], ends[k, 1] = middle - half, middle + half
-    return Range(ends, np.full(distance.shape, share * numbers.grip), distance)
+        ends[k, 0], ends[k, 1] = -share * half_width, share * half_width
+        ends[k + 1, 0], ends[k + 1, 1] = middle - half, middle + half
+    return Range(ends, share * numbers.grip + 0 * distance, distance)
 
 
 def holds_a_log(bounds: Range) -> np.ndarray:
@@ -108,11 +111,6 @@ def critical_distances(bounds: Range) -> np.ndarray:
     before, after = steep[row, corner], steep[row + 1, corner]
     step = bounds.distance[row + 1] - bounds.distance[row]
     return np.asarray(np.unique(bounds.distance[row] + step * before / (before - after)))
-
-
-def joined(ranges: Sequence[Range]) -> Range:
-    """Ranges behind one another."""
-    return Range(*(np.concatenate(parts, axis=-1) for parts in zip(*ranges, strict=True)))
 
 
 def critical_turns(bounds: Range) -> np.ndarray:
@@ -177,7 +175,7 @@ def log_at(offsets: np.ndarray, distance: np.ndarray) -> Log:
 def bounds_met(numbers: Numbers, set_name: str, state: str, log: Log) -> str:
     """Which limits of its set a log sits on, in words."""
     low, high = distances(numbers, state)
-    bounds = allowed(numbers, set_name, state, np.array(float(log.l_AB)))
+    bounds = allowed(numbers, SHARE[set_name], state == BURIED, np.array(float(log.l_AB)))
     near = 1e-6 * high
     slope = np.hypot(log.b_y - log.a_y, log.b_z - log.a_z) / log.l_AB
     words = []

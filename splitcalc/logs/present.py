@@ -9,7 +9,7 @@ from typing import Any
 import numpy as np
 
 from splitcalc.findings import Check, Finding
-from splitcalc.logs.allowed import OFFSETS, STATES, allowed, distances
+from splitcalc.logs.allowed import BURIED, OFFSETS, SHARE, STATES, allowed, distances
 from splitcalc.logs.report import acting_on, find
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.shapes.section import Section
@@ -48,10 +48,11 @@ def log_by_ram(*, length: float, up: float, tan_up: float, tan_left: float) -> L
 
 def narrowest_set(numbers: Numbers, log: Log) -> tuple[str, str]:
     """(set, state) that the log belongs to; (`OUTSIDE`, "first bite") when none allows it."""
+    at = np.array(float(log.l_AB))
     for set_name in SETS:
         for state in STATES:
             low, high = distances(numbers, state)
-            bounds = allowed(numbers, set_name, state, np.array(float(log.l_AB)))
+            bounds = allowed(numbers, SHARE[set_name], state == BURIED, at)
             slope = np.hypot(log.b_y - log.a_y, log.b_z - log.a_z) / log.l_AB
             inside = low <= log.l_AB <= high and slope <= bounds.slope * (1 + 1e-9)
             for name, (least, most) in zip(OFFSETS, bounds.ends, strict=True):

@@ -17,6 +17,9 @@ import numpy as np
 
 from splitcalc.findings import Check, demand_over_capacity, worst_place
 from splitcalc.logs.allowed import (
+    BURIED,
+    FIRST_BITE,
+    SHARE,
     STATES,
     allowed,
     candidates,
@@ -24,7 +27,6 @@ from splitcalc.logs.allowed import (
     critical_turns,
     distances,
     holds_a_log,
-    joined,
     log_at,
     turn_of,
 )
@@ -125,9 +127,9 @@ def _coarse(numbers: Numbers, count: int, *, critical: bool) -> list[Net]:
     nets = []
     for set_name, state in product(SETS, STATES):
         fine = np.linspace(*distances(numbers, state), FINE)
-        bounds = allowed(numbers, set_name, state, fine)
+        bounds = allowed(numbers, SHARE[set_name], state == BURIED, fine)
         held = np.flatnonzero(holds_a_log(bounds))
-        if not held.size or (state == "first bite" and _within_buried(numbers, set_name, fine)):
+        if not held.size or (state == FIRST_BITE and _within_buried(numbers, set_name, fine)):
             continue
         low, high = fine[max(held[0] - 1, 0)], fine[min(held[-1] + 1, FINE - 1)]
         distance = np.linspace(low, high, count)
@@ -140,8 +142,8 @@ def _coarse(numbers: Numbers, count: int, *, critical: bool) -> list[Net]:
 
 def _within_buried(numbers: Numbers, set_name: str, distance: np.ndarray) -> bool:
     """Whether every first bite is also an allowed buried log: then one state is enough."""
-    first = allowed(numbers, set_name, "first bite", distance)
-    buried = allowed(numbers, set_name, "buried", distance)
+    first = allowed(numbers, SHARE[set_name], False, distance)
+    buried = allowed(numbers, SHARE[set_name], True, distance)
     return bool(
         distance[0] >= numbers.gap
         and np.all(first.ends[:, 0] >= buried.ends[:, 0] - 1e-12)
@@ -165,7 +167,13 @@ def _look(
     check: Check, numbers: Numbers, nets: Sequence[Net], kept: Any
 ) -> tuple[list[Spot], Kept]:
     """The worst log of each net that has one, and the stations and points that came near it."""
-    bounds = joined([allowed(numbers, net.set, net.state, net.distance) for net in nets])
+    counts = [len(net.distance) for net in nets]
+    bounds = allowed(
+        numbers,
+        np.repeat([SHARE[net.set] for net in nets], counts),
+        np.repeat([net.state == BURIED for net in nets], counts),
+        np.concatenate([net.distance for net in nets]),
+    )
     free = np.concatenate([np.broadcast_to(n.turns, (len(n.distance), len(n.turns))) for n in nets])
     turns = np.concatenate([critical_turns(bounds), free], axis=-1)
     offsets, valid = candidates(bounds, turns)

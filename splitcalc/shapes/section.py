@@ -13,6 +13,9 @@ from splitcalc.shapes.thinwall import ThinWalled
 Array = Any
 
 
+DISTORTION_REACH = 1.5  # depths
+
+
 class Spot(NamedTuple):
     """Where a stress point is: its fibre (y, z), and its wall and share of the wall's length."""
 
@@ -76,6 +79,11 @@ class Section:
     t_max: Array
     points: Points
     parts: tuple[Part, ...]
+
+    @property
+    def reach(self) -> Array:
+        """How far from a load a closed section distorts, 0 for an open one. [m]"""
+        return 0.0 if self.open else DISTORTION_REACH * self.h
 
     @property
     def S_t(self) -> Array:

@@ -26,7 +26,6 @@ ALLOWANCE = (
     "unstiffened 200 × 100 × 8 hollow section"
 )
 DISTORTION_SHARE = 0.25
-DISTORTION_REACH = 1.5  # depths from the edges of pads and fixed tool
 
 
 @equation(gives="sigma_x", source=NAVIER)
@@ -129,7 +128,7 @@ def distortion_share(numbers: Numbers, actions: Actions) -> Array:
     A diaphragm counts at the fixed tool when it stands between the ends of its root weld. None
     can stand under the travelling sled.
     """
-    reach = DISTORTION_REACH * numbers.section.h
+    reach = numbers.section.reach
     near: Array = False
     for place, (start, end) in actions.frame.patches.items():
         if place == "mount":

@@ -104,11 +104,11 @@ def place(x: Array, load: tuple[Array, Array], span: Span, kappa: Array) -> Plac
 
     Only the part of the load on the span counts, and only stations on it.
     """
+    at_start, at_end = remaining(span.start, *load), remaining(span.end, *load)
+    if not np.any(at_start != at_end):
+        return None
     first = clamp(load[0], span.start, span.end)
     last = clamp(load[1], span.start, span.end)
-    at_start, at_end = remaining(span.start, *load), remaining(span.end, *load)
-    if not np.any(at_start - at_end):
-        return None
     inside = (x >= span.start) & (x <= span.end)
     here = clamp(x, span.start, span.end)
     behind = (np.minimum(first, here), np.minimum(last, here))

@@ -161,14 +161,16 @@ def stations(numbers: Numbers, frame: Frame, per_stretch: int) -> Array:
     """Places to look at, shape `samples + (n, 1)`: where anything changes, and between. [m]
 
     Each stretch between two marks is cut in `per_stretch` equal parts. Marks: ends and middles of
-    pads and root weld, with and without their spread into the web, mount, the beam's ends,
-    stiffeners, closed stretches.
+    pads and root weld, with and without their spread into the web, how far from them a closed
+    section distorts, mount, the beam's ends, stiffeners, closed stretches.
     """
     c = numbers.section.t_f + numbers.section.r
     marks: list[Array] = [numbers.x_start, numbers.x_end, numbers.x_m]
     for name in ("rear pad", "front pad", "fixed tool"):
         start, end = frame.patches[name]
         marks += [start - c, start, (start + end) / 2, end, end + c]
+        if not numbers.section.open:
+            marks += [start - numbers.section.reach, end + numbers.section.reach]
     marks += [*numbers.stiffeners, *(x for zone in numbers.closed_zones for x in zone)]
     samples = np.broadcast_shapes(*(np.shape(mark)[:-2] for mark in marks))
     edges = np.empty((*samples, len(marks)))
