@@ -17,7 +17,7 @@ from hypothesis import strategies as st
 
 from splitcalc.machine.file import load
 from splitcalc.machine.numbers import Numbers
-from splitcalc.shapes import families
+from splitcalc.shapes import build
 from splitcalc.shapes.families import Hollow, PlateBox, PlateI, RolledI
 from splitcalc.shapes.section import Section
 from splitcalc.shapes.thinwall import Flow, ThinWalled, Walls, solve
@@ -306,7 +306,7 @@ def test_the_worst_corner_is_one_of_the_four(
 
 
 def model_of(family: Any, sizes: Any) -> tuple[Section, Walls, ThinWalled]:
-    with patch.object(families, "solve", wraps=solve) as spy:
+    with patch.object(build, "solve", wraps=solve) as spy:
         section = family.build(sizes)
     walls = spy.call_args.args[0]
     return section, walls, solve(walls)
