@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import html
 import math
+import textwrap
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from typing import Any
@@ -19,6 +20,8 @@ from splitcalc.equations.render import lines_of_text
 from splitcalc.units import MINUS, Dimension, number, show
 
 Array = Any
+
+WIDTH = 100  # columns of text that a notebook shows unbroken on a 1280 px screen
 
 
 @dataclass(frozen=True)
@@ -140,7 +143,7 @@ class Finding:
 
     def text(self) -> str:
         """Verdict, equations (symbols, numbers with units, result), source, assumptions."""
-        out = [self.verdict()]
+        out = textwrap.wrap(self.verdict(), WIDTH)
         place = None
         for line in self.lines:
             source = line.equation.source

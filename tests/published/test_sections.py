@@ -17,6 +17,7 @@ import pytest
 from splitcalc.shapes.families import Hollow, PlateBox, PlateI, RolledI
 from splitcalc.shapes.section import Section
 from splitcalc.shapes.tables import all_sections
+from splitcalc.shapes.thinwall import Walls, solve
 from tests.published.test_torsion import SKEW_I, table_section
 
 DATA = tomllib.loads(Path(__file__).with_name("sections.toml").read_text("utf-8"))
@@ -226,6 +227,10 @@ def test_hollow_sections_by_polygons(
 BOX = PlateBox.build(DATA["box"]["sizes"])
 
 
+def plate_i(b_t: float, t_t: float, b_b: float, t_b: float) -> Section:
+    return PlateI.build({"d": 0.2, "b_t": b_t, "t_t": t_t, "b_b": b_b, "t_b": t_b, "t_w": 0.008})
+
+
 def test_plate_box_as_worked_out() -> None:
     told = DATA["box"]
     mm = 1e-3
@@ -250,8 +255,8 @@ def test_plate_box_as_worked_out() -> None:
 
 @pytest.mark.parametrize(
     "section",
-    [BOX, SKEW_I, PlateBox.build({**DATA["box"]["sizes"], "b_t": 0.26, "t_b": 0.03})],
-    ids=["box", "I", "box with a heavy bottom"],
+    [BOX, SKEW_I, plate_i(0.3, 0.04, 0.1, 0.01), plate_i(0.1, 0.01, 0.3, 0.04)],
+    ids=["box", "I", "axis in the top flange", "axis in the bottom flange"],
 )
 def test_plastic_moduli_by_thin_strips(section: Section) -> None:
     """Area above minus area below the axis of equal areas, over 40 000 strips."""
@@ -287,6 +292,21 @@ def test_torsion_constant_of_plates_is_the_sum_over_walls() -> None:
     assert pytest.approx((2 * 160 * 13**3 + 134 * 8**3) / 3 * 1e-12, rel=1e-12) == plates.J
 
 
+def test_shear_centre_and_warping_constant_of_a_channel() -> None:
+    """Thin walls on their mid-lines, e = b² h² t_f / (4 I_y) from the web; from memory."""
+    b, h, t_f, t_w = 0.07, 0.19, 0.012, 0.008
+    y, z = np.array([b, 0, 0, b]) + 0.03, np.array([h, h, 0, 0])
+    model = solve(Walls(y, z, np.array([t_f, t_w, t_f]), ((0, 1), (1, 2), (2, 3))))
+    I_y = t_w * h**3 / 12 + b * t_f * h**2 / 2
+    C_w = t_f * b**3 * h**2 / 12 * (3 * b * t_f + 2 * h * t_w) / (6 * b * t_f + h * t_w)
+    assert (model.I_y, model.C_w) == pytest.approx((I_y, C_w), rel=1e-9)
+    assert (model.y_c, model.z_c) == pytest.approx(
+        (0.03 + b**2 * t_f / (2 * b * t_f + h * t_w), h / 2), rel=1e-9
+    )
+    shear_centre = (0.03 - b**2 * h**2 * t_f / (4 * I_y), h / 2)
+    assert (model.y_s, model.z_s) == pytest.approx(shear_centre, rel=1e-9)
+
+
 # --- stress points and what does not fit ---------------------------------------------------------
 
 EXAMPLES = {family.SHAPE: family for family in (RolledI, PlateI, Hollow, PlateBox)}
@@ -300,6 +320,9 @@ def test_stress_points_stand_where_a_drawing_has_them(told: dict[str, Any]) -> N
     y, z = np.array(told["at"]).T * mm
     assert section.points.y == pytest.approx(y, abs=1e-6)
     assert section.points.z - section.z_b == pytest.approx(z, abs=1e-6)
+    middle_of_flange, bottom = section.z_t - section.t_f / 2, sizes.get("t_b", section.t_f)
+    assert section.z_f == pytest.approx(middle_of_flange, rel=1e-12)
+    assert section.h_o == pytest.approx(section.z_f - section.z_b - bottom / 2, rel=1e-12)
 
 
 I_SIZES = {"d": 0.1, "b_t": 0.08, "b_b": 0.07, "t_t": 0.04, "t_b": 0.0399, "t_w": 0.02}

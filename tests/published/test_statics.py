@@ -12,10 +12,12 @@ from typing import Any
 import numpy as np
 import pytest
 
-from splitcalc.thrust.frame import Frame
+from splitcalc.machine.file import load
+from splitcalc.thrust.frame import Frame, Log, frame_of, stations
 from splitcalc.thrust.statics import Actions, actions, reactions, six_sums, tool_moment_up
 
-CASES = tomllib.loads(Path(__file__).with_name("statics.toml").read_text("utf-8"))["case"]
+HERE = Path(__file__).resolve().parent
+CASES = tomllib.loads((HERE / "statics.toml").read_text("utf-8"))["case"]
 every_case = pytest.mark.parametrize("case", CASES, ids=[case["name"] for case in CASES])
 
 
@@ -72,6 +74,27 @@ def test_a_tool_that_starts_on_the_front_pad_is_refused() -> None:
     Frame.from_points(**points | {"tool": [0.45, 1.0]})
     with pytest.raises(ValueError, match="tool needs a start ahead of the front pad"):
         Frame.from_points(**points | {"tool": [0.44, 1.0]})
+
+
+def test_stations_hold_every_place_where_something_changes() -> None:
+    numbers = replace(
+        load(HERE.parents[1] / "worksheets" / "machine.toml").numbers(), closed_zones=((1.2, 1.45),)
+    )
+    frame = frame_of(numbers, Log(0.5, 0.02, 0.03, -0.01, 0.0))
+    spread = numbers.section.t_f + numbers.section.r
+    wanted = [numbers.x_start, numbers.x_end, numbers.x_m, 1.2, 1.45, *numbers.stiffeners]
+    for middle, half in (
+        (frame.x_A - numbers.rear_pad, numbers.l_p / 2),
+        (frame.x_A - numbers.front_pad, numbers.l_p / 2),
+        ((numbers.x_3 + numbers.x_4) / 2, (numbers.x_4 - numbers.x_3) / 2),
+    ):
+        wanted += [middle, *(middle + way * (half + c) for way in (-1, 1) for c in (0, spread))]
+    marks = stations(numbers, frame, 1)[:, 0]
+    assert marks == pytest.approx(np.sort(wanted))
+    quarters = stations(numbers, frame, 4)[:, 0]
+    assert quarters == pytest.approx(
+        np.interp(np.arange(4 * len(marks) - 3) / 4, range(len(marks)), marks)
+    )
 
 
 # --- SymPy ---------------------------------------------------------------------------------------
