@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import json
+import os
 import sys
 import textwrap
 from pathlib import Path
@@ -120,6 +121,8 @@ def main(argv: list[str] | None = None) -> int:
         return int(args.run(args))
     except InputError as error:
         print(f"splitcalc: {error}", file=sys.stderr)
+    except BrokenPipeError:  # the reader, such as `head`, has seen enough
+        sys.stdout = open(os.devnull, "w")  # noqa: SIM115 - for the flush at exit
     except OSError as error:
         print(f"splitcalc: {error.filename or args.command}: {error.strerror}", file=sys.stderr)
     return 2

@@ -25,7 +25,7 @@ from splitcalc.inputs import (
     walk,
 )
 from splitcalc.machine.document import Document
-from splitcalc.machine.fit import misfits
+from splitcalc.machine.fit import misfits, unused
 from splitcalc.machine.numbers import Numbers, Overrides, numbers_of
 from splitcalc.shapes.families import FAMILIES, Family
 from splitcalc.shapes.tables import all_sections, look_up
@@ -76,11 +76,12 @@ class Machine:
         return any(".".join(parts[:n]) in self.given for n in range(1, len(parts) + 1))
 
     def assumptions(self) -> list[str]:
-        """Every default that was taken, with its reason."""
+        """Every default that was taken and means something here, with its reason."""
+        idle = unused(self.document)
         return [
             f"{fact.words}: {_taken(fact, value)} [{key}]"
             for key, fact, value, given in self.inputs()
-            if not given and fact.reason and fact.default is not REQUIRED
+            if not given and fact.reason and fact.default is not REQUIRED and key not in idle
         ]
 
 

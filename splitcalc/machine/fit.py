@@ -26,6 +26,16 @@ def pads_of(guide: str, get: Callable[[str], Any]) -> tuple[Any, Any, Any]:
     return rear, front, length
 
 
+def unused(document: Document) -> set[str]:
+    """Keys that say nothing about this machine: a push plate's rake, a wedge's grip and so on."""
+    tools = (("moving_tool", document.moving_tool), ("fixed_tool", document.fixed_tool))
+    idle = {"push plate": ("rake", "included_angle"), "wedge": ("grip", "grip_limit")}
+    guide = PADS if document.sled.guide == "continuous" else GUIDE
+    return {f"{name}.{key}" for name, tool in tools for key in idle[tool.kind]} | {
+        f"sled.{key}" for key in guide
+    }
+
+
 def section_values(beam: Beam) -> dict[str, float | str]:
     """The section's typed dimensions. [m]"""
     return {
