@@ -3,7 +3,7 @@
 Rows of the section tables are held against `oracles.py`. What that confirms differs: US figures
 are published ones. Of the European rolled shapes A, I_y and I_z are arithmetic of the data package
 on its own dimensions, which are ours too: they confirm the formulas and are no published table;
-J, C_w, S and Z of four of them stand in `sections.toml`, from memory of a mill's catalogue.
+of four of them `sections.toml` has more, J and C_w from memory of a mill's catalogue.
 European hollow figures are published ones, three digits. `sections.toml` names all sources.
 """
 
