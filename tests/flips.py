@@ -24,6 +24,7 @@ FOCUSED = (
     "tests/published/test_statics.py",
     "tests/published/test_web.py",
     "tests/published/test_sections.py",
+    "tests/test_shapes.py",
     "tests/test_physics.py",
 )
 BESIDE = ("pyproject.toml", "tests/conftest.py", "tests/published", "worksheets", *FOCUSED)

@@ -1,0 +1,50 @@
+"""What every section must be, whatever its family."""
+
+import numpy as np
+import pytest
+
+from splitcalc.machine.file import load
+from splitcalc.machine.fit import section_values
+from splitcalc.opening import worksheets_dir
+from splitcalc.shapes.geometry import plastic_moduli, rectangle
+from splitcalc.shapes.tables import all_sections
+
+ALL = {
+    **all_sections(),
+    "box of plates": load(worksheets_dir() / "machine-si.toml").document.beam.section,
+}
+
+
+def built(shape):
+    values = {k: getattr(v, "si", v) for k, v in vars(shape).items()}
+    return shape.build(values)
+
+
+@pytest.mark.parametrize("name", ALL)
+def test_the_loaded_flange_is_the_top_one(name):
+    section = built(ALL[name])
+    assert section.z_f == pytest.approx(section.z_t - section.t_f / 2, rel=1e-12)
+    assert section.z_t - section.z_b == pytest.approx(section.h, rel=1e-12)
+    assert section.z_b < section.z_s < section.z_t
+
+
+@pytest.mark.parametrize("name", ALL)
+def test_at_least_twelve_named_points_lie_in_mirrored_pairs(name):
+    points = built(ALL[name]).points
+    assert len(points.names) == len(set(points.names)) >= 12
+    rows = np.stack([points.y, points.z, abs(points.Q_y), points.Q_z, points.t], axis=-1)
+    mirrored = rows * [-1, 1, 1, 1, 1]
+    for row in mirrored:
+        assert np.isclose(rows, row, rtol=1e-9, atol=1e-12).all(axis=1).any(), row
+
+
+def test_a_rectangle_has_the_plastic_moduli_of_a_rectangle():
+    # b h² / 4 and h b² / 4, any text on plasticity
+    assert plastic_moduli([rectangle(-0.03, 0.03, 0.01, 0.11)]) == pytest.approx(
+        (0.06 * 0.1**2 / 4, 0.1 * 0.06**2 / 4), rel=1e-9
+    )
+
+
+def test_the_typed_dimensions_are_those_that_are_built():
+    beam = load(worksheets_dir() / "machine-si.toml").document.beam
+    assert section_values(beam)["h_w"] == 0.18
