@@ -298,7 +298,7 @@ def resultant(flow: Flow, walls: Walls, model: ThinWalled) -> np.ndarray:
     i, j = np.array(walls.ends).T
     dy, dz = walls.y[j] - walls.y[i], walls.z[j] - walls.z[i]
     mean = flow.start + flow.linear / 2 + flow.square / 3
-    arm = walls.y[i] * dz - (walls.z[i] - model.z_s) * dy
+    arm = (walls.y[i] - model.y_s) * dz - (walls.z[i] - model.z_s) * dy
     return np.array([(mean * dy).sum(), (mean * dz).sum(), (mean * arm).sum()])
 
 
