@@ -1,5 +1,7 @@
 """What every section must be, whatever its family."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 
@@ -8,6 +10,7 @@ from splitcalc.machine.fit import section_values
 from splitcalc.opening import worksheets_dir
 from splitcalc.shapes.geometry import plastic_moduli, rectangle
 from splitcalc.shapes.tables import all_sections
+from splitcalc.thrust.frame import Log, frame_of, stations
 
 ALL = {
     **all_sections(),
@@ -52,3 +55,14 @@ def test_a_rectangle_has_the_plastic_moduli_of_a_rectangle():
 def test_the_typed_dimensions_are_those_that_are_built():
     beam = load(worksheets_dir() / "machine-si.toml").document.beam
     assert section_values(beam)["h_w"] == 0.18
+
+
+def test_stations_hold_the_ends_of_a_closed_sections_distortion():
+    numbers = load(worksheets_dir() / "machine-si.toml").numbers()
+    numbers = replace(numbers, x_start=-2.0, x_end=4.0)  # long enough for all ends to lie on it
+    frame = frame_of(numbers, Log(0.5, 0.0, 0.0, 0.0, 0.0))
+    x = stations(numbers, frame, 1)[:, 0]
+    for place in ("rear pad", "front pad", "fixed tool"):
+        start, end = frame.patches[place]
+        for mark in (start - 1.5 * numbers.section.h, end + 1.5 * numbers.section.h):
+            assert np.isclose(x, mark, atol=1e-12).any(), (place, mark)

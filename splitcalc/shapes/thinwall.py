@@ -4,8 +4,8 @@ A section is a graph of straight walls between nodes. Leading axes of the coordi
 thicknesses are samples: one batched solve serves them all.
 
 Sources: shear flow by equilibrium at the nodes and no twist of each cell; warping by V. Z. Vlasov
-(open) and R. Bredt (cells); both as in any text on thin-walled sections, from memory. Symmetric
-about z: the moment of deviation is taken as zero, which `solve` checks.
+(open) and R. Bredt (cells); both as in any text on thin-walled sections, from memory. The
+principal axes lie along y and z, which `solve` checks.
 """
 
 from __future__ import annotations
@@ -83,7 +83,7 @@ def solve(walls: Walls) -> ThinWalled:
 
     Raises
     ------
-    ValueError : when the section isn't symmetric about z
+    ValueError : when the principal axes don't lie along y and z
     """
     i, j = np.array(walls.ends).T
     y, z = walls.y[..., i], walls.z[..., i]
@@ -110,7 +110,7 @@ def solve(walls: Walls) -> ThinWalled:
 
     I_y, I_z = inner(nz, nz), inner(ny, ny)
     if np.any(abs(inner(ny, nz)) > 1e-9 * np.sqrt(I_y * I_z)):
-        raise ValueError("the section must be symmetric about its vertical axis")
+        raise ValueError("the section's principal axes must lie along y and z")
 
     # Bredt: flow of a unit rate of twist; radius times length is twice the swept area
     swept = ny[..., i] * dz - nz[..., i] * dy

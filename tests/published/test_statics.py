@@ -76,21 +76,30 @@ def test_a_tool_that_starts_on_the_front_pad_is_refused() -> None:
         Frame.from_points(**points | {"tool": [0.44, 1.0]})
 
 
-def test_stations_hold_every_place_where_something_changes() -> None:
-    numbers = replace(
-        load(HERE.parents[1] / "worksheets" / "machine.toml").numbers(), closed_zones=((1.2, 1.45),)
-    )
+@pytest.mark.parametrize(
+    ("name", "zones"),
+    [("machine.toml", ((1.2, 1.45),)), ("machine-si.toml", ())],
+    ids=["open section", "closed section"],
+)
+def test_stations_hold_every_place_where_something_changes(
+    name: str, zones: tuple[tuple[float, float], ...]
+) -> None:
+    numbers = load(HERE.parents[1] / "worksheets" / name).numbers()
+    numbers = replace(numbers, closed_zones=zones)
+    section = numbers.section
     frame = frame_of(numbers, Log(0.5, 0.02, 0.03, -0.01, 0.0))
-    spread = numbers.section.t_f + numbers.section.r
-    wanted = [numbers.x_start, numbers.x_end, numbers.x_m, 1.2, 1.45, *numbers.stiffeners]
+    # into the web, and as far as a closed section distorts
+    reaches = [0.0, section.t_f + section.r, *([] if section.open else [1.5 * section.h])]
+    wanted = [numbers.x_start, numbers.x_end, numbers.x_m, *numbers.stiffeners]
+    wanted += [x for zone in zones for x in zone]
     for middle, half in (
         (frame.x_A - numbers.rear_pad, numbers.l_p / 2),
         (frame.x_A - numbers.front_pad, numbers.l_p / 2),
         ((numbers.x_3 + numbers.x_4) / 2, (numbers.x_4 - numbers.x_3) / 2),
     ):
-        wanted += [middle, *(middle + way * (half + c) for way in (-1, 1) for c in (0, spread))]
+        wanted += [middle, *(middle + way * (half + c) for way in (-1, 1) for c in reaches)]
     marks = stations(numbers, frame, 1)[:, 0]
-    assert marks == pytest.approx(np.sort(wanted))
+    assert marks == pytest.approx(np.sort(np.clip(wanted, numbers.x_start, numbers.x_end)))
     quarters = stations(numbers, frame, 4)[:, 0]
     assert quarters == pytest.approx(
         np.interp(np.arange(4 * len(marks) - 3) / 4, range(len(marks)), marks)
