@@ -1,7 +1,7 @@
 """Sign-flip proof: every plus and minus of the core is there because a test says so.
 
 `python tests/flips.py` flips them one at a time in a copy of the package, runs the focused tests
-on it, and prints each flip that no test notices. It takes about an hour; `test_flips.py` tries a
+on it, and prints each flip that no test notices. It takes half an hour; `test_flips.py` tries a
 few. Left alone: indices, axes, and flips in `SAME` that can't change a result.
 """
 
