@@ -196,9 +196,3 @@ def worst_place(values: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
     if not np.all(np.isfinite(top)):
         raise FloatingPointError("a check gave a value that is not a finite number")
     return top, index
-
-
-def percent(value: float) -> str:
-    """A share as a whole percentage, or with one digit below ten."""
-    shown = abs(value) * 100
-    return f"{number(shown, Dimension.NUMBER, 'si', 2 if shown < 10 else 3)} %"

@@ -11,7 +11,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from splitcalc.equations import Line, equation
-from splitcalc.findings import Check, Finding, margin_text, percent, worst_place
+from splitcalc.findings import Check, Finding, margin_text, worst_place
 from splitcalc.logs.report import find, findings, governing
 from splitcalc.machine.file import load
 from splitcalc.thrust.frame import Log
@@ -138,18 +138,6 @@ def test_the_sign_of_a_margin_tells_who_holds(utilisation):
         assert shown - 1e-9 <= 1 / utilisation - 1 <= shown + 0.01 + 1e-9
 
 
-def test_percent():
-    assert [percent(v) for v in (0.0512, -0.0512, 0.5123, 0.0)] == [
-        "5.1 %",
-        "5.1 %",
-        "51.2 %",
-        "0 %",
-    ]
-
-
-# --- from arrays to a place ---------------------------------------------------------------------
-
-
 def test_the_worst_place_of_each_sample():
     values = np.array([[[0.1, 0.7], [0.3, 0.2]], [[0.4, 0.1], [0.2, 0.9]]])
     top, index = worst_place(values)
@@ -200,7 +188,7 @@ def test_a_finding_is_about_its_log(numbers):
     assert list(told.values()) == [0.4, 0.01, 0.02, 0.03, 0.04]
     assert finding.log["state"] == "buried"
     assert finding.log["force_N"] == numbers.F
-    assert finding.required_factor == numbers.yield_factors["usual"]
+    assert finding.required_factor == numbers.required["yield"]["usual"]
 
 
 def test_the_worst_finding_governs():

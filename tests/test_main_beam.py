@@ -8,7 +8,8 @@ from splitcalc.checks import ALL
 from splitcalc.draw.main_beam import ceiling
 from splitcalc.draw.png import read_inputs
 from splitcalc.logs.present import OUTSIDE, log_by_ram, narrowest_set, present
-from splitcalc.machine.file import load
+from splitcalc.logs.report import acting_on, find
+from splitcalc.machine.file import load, parse_machine
 from splitcalc.opening import worksheets_dir
 from splitcalc.sheet.main_beam import STALE, MainBeam
 
@@ -87,3 +88,25 @@ def test_straight_logs_are_usual_and_steep_ones_are_not_allowed(name):
 @pytest.mark.parametrize(("value", "top"), [(0.9, 1), (1.2, 1.5), (43.5, 50), (60, 60), (61, 80)])
 def test_axis_limits_are_quiet_numbers(value, top):
     assert ceiling(value) == pytest.approx(top)
+
+
+def test_a_usual_log_is_judged_in_both_sets_as_if_found_in_each():
+    machine = load(worksheets_dir() / "machine.toml")
+    numbers = machine.numbers()
+    log = log_by_ram(length=0.5, up=0.0, tan_up=0.02, tan_left=0.0)
+    now = present(ALL, numbers, log)
+    alone = {
+        (check.id, name): find(check, numbers, acting_on(numbers, log), set=name).utilisation
+        for check in ALL
+        for name in ("usual", "extreme")
+    }
+    assert {(f.check.id, f.set): f.utilisation for f in now.findings} == alone
+
+
+def test_a_contact_range_that_crushes_is_said_on_the_page():
+    text = (worksheets_dir() / "machine.toml").read_text(encoding="utf-8")
+    narrow = text.replace('grip = "plain"', 'grip = "plain"\ncontact_half_width = "1/2 in"')
+    assert narrow != text
+    page = MainBeam(parse_machine(narrow.encode())).page
+    assert "Note: the push plate" in page.children[-1].value
+    assert "Note:" not in MainBeam(parse_machine(text.encode())).page.children[-1].value

@@ -116,7 +116,9 @@ def contact_ranges(numbers, set_name, state, l_AB):
         if is_wedge and state == "buried":
             # the wood beside the edge bears f_90 on the buried part
             c = numbers.longest - l_AB
-            half = numbers.t_wedge / 2 + numbers.f_90 * numbers.h_wedge * c**2 / (4 * numbers.F)
+            whole = numbers.wedge
+            tall = whole.high - whole.low
+            half = whole.half_width + numbers.f_90 * tall * c**2 / (4 * numbers.F)
             low, high = numbers.wedge.low, numbers.wedge.high
         middle, reach = (low + high) / 2, (high - low) / 2
         ranges += [(-share * half, share * half), (middle - share * reach, middle + share * reach)]

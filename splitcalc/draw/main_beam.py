@@ -48,7 +48,7 @@ class MainBeamPicture:
         self.canvas = Canvas(WIDTH, HEIGHT)
         self._stress, self._use = self.canvas.figure.subplots(2, 1, height_ratios=(2.9, 1))
         demands = [f.demand for f in worst if f.demand is not None]
-        limits = [numbers.f_y / required for required in numbers.yield_factors.values()]
+        limits = [numbers.f_y / required for required in numbers.required["yield"].values()]
         self._tops = (
             ceiling(1.05 * max(*demands, *limits) * self._mpa),
             ceiling(max([1.2, *(f.utilisation or 0.0 for f in worst)])),
@@ -86,7 +86,7 @@ class MainBeamPicture:
         for near in self._near:
             axes.add_patch(near)
         self._limits: list[Artist] = [axes.axhline(0, color=palette.QUIET, linewidth=0.8, zorder=1)]
-        for name, required in numbers.yield_factors.items():
+        for name, required in numbers.required["yield"].items():
             limit = numbers.f_y / required * self._mpa
             for sign in (1, -1):
                 line = axes.axhline(sign * limit, color=palette.LIMIT, linewidth=1, zorder=1)

@@ -5,7 +5,6 @@ Red means one thing: does not hold. Blue and purple are top and bottom, light is
 
 INK = "#2b2b2b"
 QUIET = "#8a8f98"
-HAIR = "#d5d8dd"
 NEAR_LOAD = "#eceef1"
 LIMIT = "#b3261e"
 PRESENT = "#2f4858"

@@ -68,8 +68,9 @@ def allowed(numbers: Numbers, share: Array, buried: Array, distance: np.ndarray)
     buried : whether the log is buried, else it is at first bite; likewise
     """
     depth = buried * (numbers.longest - distance)
-    aside = numbers.f_90 * numbers.h_wedge * depth**2 / (4 * numbers.F)
-    wedge = Contact(numbers.t_wedge / 2 + aside, numbers.wedge.low, numbers.wedge.high)
+    whole = numbers.wedge
+    aside = numbers.f_90 * (whole.high - whole.low) * depth**2 / (4 * numbers.F)
+    wedge = Contact(whole.half_width + aside, whole.low, whole.high)
     ends = np.empty((4, 2, *distance.shape))
     for k, contact, is_wedge in (
         (0, numbers.moving, numbers.wedge_moves),

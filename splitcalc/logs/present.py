@@ -10,7 +10,7 @@ import numpy as np
 
 from splitcalc.findings import Check, Finding
 from splitcalc.logs.allowed import BURIED, OFFSETS, SHARE, STATES, allowed, distances
-from splitcalc.logs.report import acting_on, find
+from splitcalc.logs.report import acting_on, find, in_set
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.shapes.section import Section
 from splitcalc.stress.normal_and_shear import signed_stresses
@@ -78,6 +78,7 @@ def present(checks: Sequence[Check], numbers: Numbers, log: Log, units: Any = "s
     sigma = signed_stresses(numbers, acting)
     set_name, state = narrowest_set(numbers, log)
     sets = SETS if set_name == "usual" else SETS[1:]
+    found = [find(check, numbers, acting, units, set=sets[0], state=state) for check in checks]
     return Present(
         log,
         acting.x[:, 0],
@@ -88,9 +89,5 @@ def present(checks: Sequence[Check], numbers: Numbers, log: Log, units: Any = "s
         web_stress(numbers, acting)[:, 0] if numbers.section.open else None,
         set_name,
         state,
-        tuple(
-            find(check, numbers, acting, units, set=one, state=state)
-            for check in checks
-            for one in sets
-        ),
+        tuple(in_set(finding, numbers, name) for finding in found for name in sets),
     )

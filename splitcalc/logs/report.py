@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
@@ -61,7 +62,7 @@ def find(
         set_name,
         demand=float(demand[station, point]),
         capacity=float(capacity[station, point]),
-        required_factor=float(numbers.yield_factors[set_name]),
+        required_factor=float(numbers.required[check.limit][set_name]),
         x=place,
         place=check.place(numbers, int(point)),
         log={
@@ -77,6 +78,14 @@ def find(
         replay=replay,
         units=units,
     )
+
+
+def in_set(finding: Finding, numbers: Numbers, set_name: str) -> Finding:
+    """The same finding judged as of another set: the stress stays, the required factor changes."""
+    if finding.demand is None:
+        return replace(finding, set=set_name)
+    required = float(numbers.required[finding.check.limit][set_name])
+    return replace(finding, set=set_name, required_factor=required)
 
 
 def findings(checks: Sequence[Check], numbers: Numbers, units: Any = "si") -> list[Finding]:

@@ -26,7 +26,8 @@ Overrides = Mapping[str, Array]
 SETS = ("usual", "extreme")
 CRUSHED_EDGE = 0.025  # m: no thrust within this distance of the push plate's edges
 TOO_SMALL = (
-    "the push plate is so small that the wood crushes up to its middle: the contact is taken there"
+    "the push plate's contact range is so small that the wood crushes up to its middle: the "
+    "contact is taken there"
 )
 YIELD = {"AISC": 1.67, "EN": 1.5 * 1.0}  # AISC 360-22 (ASD); EN 1993-1-1 gamma_F * gamma_M0
 
@@ -63,7 +64,7 @@ class Numbers:
     x_B fixed tool, x_3 and x_4 its root weld; rear_pad, front_pad behind the moving face, l_p
     their length, z_p their side contact, r_2 the front pad's share of roll. Then which logs:
     contacts on both tools, grip (largest slope), the log's lengths, the smallest gap, and for the
-    buried state the wedge's thickness, height and the wood's strength f_90.
+    buried state the whole wedge and the wood's strength f_90.
     """
 
     F: Array
@@ -88,8 +89,6 @@ class Numbers:
     fixed: Contact
     wedge: Contact
     wedge_moves: bool
-    t_wedge: Array
-    h_wedge: Array
     grip: Array
     longest: Array
     shortest: Array
@@ -98,7 +97,7 @@ class Numbers:
     stiffeners: tuple[float, ...]
     diaphragms: tuple[float, ...]
     closed_zones: tuple[tuple[float, float], ...]
-    yield_factors: Mapping[str, Array]
+    required: Mapping[str, Mapping[str, Array]]  # factors: by a check's limit, then by set
     lines: tuple[Line, ...] = ()  # the equations that made these numbers
     notes: tuple[str, ...] = ()  # what a reviewer must know of these numbers
 
@@ -158,12 +157,11 @@ def _numbers(document: Document, overrides: Overrides | None) -> Numbers:
         f_e=get("logs.end_grain_strength"),
         s_min=CRUSHED_EDGE,
     )
-    if wedge_moves:
-        fixed = _inset(fixed, edge)
-    else:
-        moving = _inset(moving, edge)
-    room = np.minimum(get(f"{plate_key}.width"), get(f"{plate_key}.height")) / 2
+    face = fixed if wedge_moves else moving
+    room = np.minimum(face.half_width, (face.high - face.low) / 2)
     notes = (TOO_SMALL,) if np.any(edge > room) else ()
+    face = _inset(face, edge)
+    moving, fixed = (moving, face) if wedge_moves else (face, fixed)
     grip = get(f"{plate_key}.grip_limit")
     side = get("sled.side_contact_height")
     usual = get("factors.yield_usual")
@@ -193,8 +191,6 @@ def _numbers(document: Document, overrides: Overrides | None) -> Numbers:
         fixed=fixed,
         wedge=Contact(get(f"{wedge_key}.width") / 2, bottom, bottom + tall),
         wedge_moves=wedge_moves,
-        t_wedge=get(f"{wedge_key}.width"),
-        h_wedge=tall,
         grip=GRIPS[plate.grip] if grip is None else grip,
         longest=get("logs.longest"),
         shortest=get("logs.shortest"),
@@ -203,9 +199,11 @@ def _numbers(document: Document, overrides: Overrides | None) -> Numbers:
         stiffeners=tuple(s.x.si for s in document.beam.stiffeners if s.kind == "full-depth pair"),
         diaphragms=tuple(s.x.si for s in document.beam.stiffeners if s.kind == "diaphragm"),
         closed_zones=tuple((z.start.si, z.end.si) for z in document.beam.closed_zones),
-        yield_factors={
-            "usual": YIELD[document.basis.design] if usual is None else usual,
-            "extreme": get("factors.yield_extreme"),
+        required={
+            "yield": {
+                "usual": YIELD[document.basis.design] if usual is None else usual,
+                "extreme": get("factors.yield_extreme"),
+            }
         },
         notes=notes,
     )

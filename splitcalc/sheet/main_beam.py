@@ -30,7 +30,6 @@ class MainBeam:
     """The page's parts, for whoever wants to arrange them anew; `page` is all of them."""
 
     def __init__(self, machine: Machine) -> None:
-        self.machine = machine
         self.numbers: Numbers = machine.numbers()
         self.units = machine.units
         self.worst = findings(ALL, self.numbers, self.units)
@@ -54,7 +53,7 @@ class MainBeam:
                 self.sentence,
                 self.image,
                 self.values,
-                HTML(_small(_foot()), layout=Layout(width=f"{WIDTH}px")),
+                HTML(_small(_foot(self.numbers.notes)), layout=Layout(width=f"{WIDTH}px")),
             ]
         )
 
@@ -134,11 +133,6 @@ class MainBeam:
         self.sentence.value = _paragraph(f"<b>No result for these values:</b> {text}")
 
 
-def main_beam(machine: Machine) -> VBox:
-    """The page for a machine."""
-    return MainBeam(machine).page
-
-
 def _paragraph(text: str) -> str:
     return f"<div style='line-height:1.4'>{text}</div>"
 
@@ -147,8 +141,9 @@ def _small(text: str) -> str:
     return f"<div style='line-height:1.35;font-size:85%;opacity:0.8'>{html.escape(text)}</div>"
 
 
-def _foot() -> str:
-    return f"{CAUTIONS} Not covered: {'; '.join(NOT_COVERED)}."
+def _foot(notes: tuple[str, ...]) -> str:
+    noted = "".join(f"Note: {note}. " for note in notes)
+    return f"{noted}{CAUTIONS} Not covered: {'; '.join(NOT_COVERED)}."
 
 
 def _table(results: list[Finding]) -> str:
