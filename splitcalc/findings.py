@@ -30,32 +30,32 @@ class Check:
 
     id : stable name, as in the JSON output
     title : trade words, the same everywhere
-    part : which part of the machine it is about
     source : where the rule comes from
-    limit : which required factor it takes
     dimension : of demand and capacity
-    convex : whether its measure is convex in the actions (then the search over logs is exact)
-    applies : (machine's numbers) -> (bool, why not)
     evaluate : (numbers, actions) -> (demand, capacity), samples first, places last:
         `samples + (stations, points)`, points 1 where there are none
+    limit : which required factor it takes
+    part : which part of the machine it is about
+    convex : whether its measure is convex in the actions (then the search over logs is exact)
+    applies : (machine's numbers) -> (bool, why not)
     place : (numbers, point index) -> words for the place in the section
     assumptions : what a reviewer must know, as sentences
     """
 
     id: str
     title: str
-    part: str
     source: str
-    limit: str
     dimension: Dimension
-    convex: bool
-    applies: Callable[[Any], tuple[bool, str]]
     evaluate: Callable[[Any, Any], tuple[Array, Array]]
-    place: Callable[[Any, int], str]
+    limit: str = "yield"
+    part: str = "beam"
+    convex: bool = False
+    applies: Callable[[Any], tuple[bool, str]] = lambda numbers: (True, "")
+    place: Callable[[Any, int], str] = lambda numbers, point: "section"
     assumptions: tuple[str, ...] = ()
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, repr=False)
 class Finding:
     """What a check found, for one set of logs. SI.
 
@@ -161,8 +161,29 @@ class Finding:
         print(self.text())
         return self
 
+    def __repr__(self) -> str:
+        return self.verdict()
+
     def _repr_html_(self) -> str:
-        return f"<pre style='line-height:1.35'>{html.escape(self.text())}</pre>"
+        """The same as `text`, laid out: what a page shows."""
+        out, place = [f"<p><b>{html.escape(self.verdict())}</b></p>"], None
+        for line in self.lines:
+            *steps, last = lines_of_text(line, self.units)
+            if line.place:
+                steps = steps[1:]
+                if line.place != place:
+                    out.append(f"<p style='margin:10px 0 2px'><i>{html.escape(line.place)}</i></p>")
+            place = line.place
+            body = "<br>".join(map(html.escape, steps))
+            out.append(
+                "<div style='margin:0 0 6px;padding-left:1.5em;text-indent:-1.5em;"
+                f"font-family:var(--jp-code-font-family,monospace);font-size:12px'>{body}<br>"
+                f"<b>{html.escape(last)}</b> <small style='opacity:0.7;font-family:sans-serif'>"
+                f"{html.escape(line.equation.source)}</small></div>"
+            )
+        notes = [f"check's source: {self.check.source}", *self.check.assumptions]
+        out += [f"<p style='margin:6px 0;font-size:85%'>{html.escape(note)}</p>" for note in notes]
+        return "".join(out)
 
 
 def margin_text(utilisation: float | None) -> str:

@@ -70,6 +70,10 @@ class InputError(ValueError):
         head = f"{what} can't be used: {count} problem{'s' if count > 1 else ''}"
         super().__init__("\n  ".join([head, *map(str, problems)]))
 
+    def _render_traceback_(self) -> list[str]:
+        """What a notebook shows: the problems, without the calls that led to them."""
+        return str(self).splitlines()
+
 
 @functools.cache
 def entry(text: str, dimension: Dimension) -> Entry:

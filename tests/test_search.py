@@ -9,10 +9,18 @@ import pytest
 
 from splitcalc.checks import ALL
 from splitcalc.findings import worst_place
-from splitcalc.logs.allowed import BURIED, SHARE, STATES, allowed, distances
-from splitcalc.logs.present import narrowest_set
+from splitcalc.logs.allowed import (
+    BURIED,
+    FIRST_BITE,
+    OFFSETS,
+    SHARE,
+    STATES,
+    allowed,
+    distances,
+)
+from splitcalc.logs.limits import OUTSIDE, narrowest_set, past_limits
 from splitcalc.logs.report import PER_STRETCH, findings
-from splitcalc.logs.search import search, values_at
+from splitcalc.logs.search import finish, search, values_at
 from splitcalc.machine.file import parse_machine
 from splitcalc.machine.numbers import SETS
 from splitcalc.thrust.frame import Log
@@ -93,12 +101,21 @@ MACHINES = {
 }
 
 
+def worst_of(checks, numbers):
+    """The worst log for each (check id, set)."""
+    return {
+        (check.id, name): spot
+        for check in checks
+        for name, spot in finish(search(check, numbers)).items()
+    }
+
+
 @pytest.fixture(scope="module", params=MACHINES)
 def machine(request):
     """(numbers, checks that apply, what the search found)"""
     numbers = parse_machine(MACHINES[request.param].encode()).numbers()
     checks = [check for check in ALL if check.applies(numbers)[0]]
-    return numbers, checks, search(checks, numbers)
+    return numbers, checks, worst_of(checks, numbers)
 
 
 # --- the allowed set, written down once more ----------------------------------------------------
@@ -372,13 +389,32 @@ def test_the_set_of_a_log_is_the_narrowest_that_allows_it(machine):
             logs = random_logs(rng, numbers, set_name, state, 40)
             for k in range(len(logs.l_AB)):
                 log = logs.take(k)
-                told = narrowest_set(numbers, log)
-                order = [(s, t) for s in SETS for t in STATES]
-                assert told == next(
-                    (s, t) for s, t in order if inside(numbers, s, t, log, slack=2e-9)
-                )
-                seen.add(told[0])
+                told = narrowest_set(numbers, log, state)
+                assert told == next(s for s in SETS if inside(numbers, s, state, log, slack=2e-9))
+                assert past_limits(numbers, log, state) == []
+                seen.add(told)
     assert seen == set(SETS)
+
+
+def test_a_step_past_any_limit_is_told_in_words(machine):
+    numbers, _, _ = machine
+    log = random_logs(np.random.default_rng(9), numbers, "extreme", FIRST_BITE, 40).take(0)
+    plain = {name: float(value) for name, value in vars(log).items()}
+    ends = allowed(numbers, 1.0, False, np.array(plain["l_AB"])).ends
+    words = {"a_y": ("right", "left"), "a_z": ("below", "above")}
+    words |= {"b_y": words["a_y"], "b_z": words["a_z"]}
+    for name, (low, high) in zip(OFFSETS, ends, strict=True):
+        for value, way in zip((low - 1e-5, high + 1e-5), words[name], strict=True):
+            moved = Log(**{**plain, name: value})
+            assert narrowest_set(numbers, moved, FIRST_BITE) == OUTSIDE
+            tool = "moving" if name[0] == "a" else "fixed"
+            told = past_limits(numbers, moved, FIRST_BITE)
+            assert any(f"contact on the {tool} tool" in t and f" {way} " in t for t in told), told
+    steep = Log(plain["l_AB"], 0.0, 0.0, 0.0, plain["l_AB"] * (numbers.grip + 1e-6))
+    assert any("past the grip's" in told for told in past_limits(numbers, steep, FIRST_BITE))
+    for length, kind in ((numbers.longest + 1e-5, "longer"), (numbers.shortest - 1e-5, "shorter")):
+        told = past_limits(numbers, Log(length, 0.0, 0.0, 0.0, 0.0), FIRST_BITE)
+        assert any(t.startswith("the log is") and kind in t for t in told), told
 
 
 def test_a_set_that_allows_no_log_gets_no_numbers():

@@ -6,8 +6,8 @@ import numpy as np
 import pytest
 
 from splitcalc.machine.file import load
-from splitcalc.machine.fit import section_values
 from splitcalc.opening import worksheets_dir
+from splitcalc.shapes.families import dimensions
 from splitcalc.shapes.geometry import plastic_moduli, rectangle
 from splitcalc.shapes.tables import all_sections
 from splitcalc.thrust.frame import Log, frame_of, stations
@@ -54,7 +54,7 @@ def test_a_rectangle_has_the_plastic_moduli_of_a_rectangle():
 
 def test_the_typed_dimensions_are_those_that_are_built():
     beam = load(worksheets_dir() / "machine-si.toml").document.beam
-    assert section_values(beam)["h_w"] == 0.18
+    assert dimensions(beam.section)["h_w"] == 0.18
 
 
 def test_stations_hold_the_ends_of_a_closed_sections_distortion():

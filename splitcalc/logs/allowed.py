@@ -171,24 +171,3 @@ def log_at(offsets: np.ndarray, distance: np.ndarray) -> Log:
     """Logs of shape `(distances, candidates, 1, 1)` for the core."""
     a_y, a_z, b_y, b_z = (part[..., None, None] for part in offsets)
     return Log(distance[..., None, None, None], a_y, a_z, b_y, b_z)
-
-
-def bounds_met(numbers: Numbers, set_name: str, state: str, log: Log) -> str:
-    """Which limits of its set a log sits on, in words."""
-    low, high = distances(numbers, state)
-    bounds = allowed(numbers, SHARE[set_name], state == BURIED, np.array(float(log.l_AB)))
-    near = 1e-6 * high
-    slope = np.hypot(log.b_y - log.a_y, log.b_z - log.a_z) / log.l_AB
-    words = []
-    if slope > bounds.slope * (1 - 1e-6):
-        words.append(f"slope at the limit {float(bounds.slope):.3g}")
-    for name, value in (("shortest", low), ("longest", high)):
-        if abs(log.l_AB - value) < near:
-            words.append(f"{name} distance")
-    names = {"y": ("right", "left"), "z": ("lower", "upper")}
-    for name, ends in zip(OFFSETS, bounds.ends, strict=True):
-        tool = "moving" if name[0] == "a" else "fixed"
-        for end, limit in zip(names[name[2]], ends, strict=True):
-            if abs(getattr(log, name) - limit) < near:
-                words.append(f"{end} end of the {tool} tool's range")
-    return "; ".join(words) or "inside the set"

@@ -9,57 +9,65 @@ from typing import Any
 import numpy as np
 
 from splitcalc.findings import Check, Finding
-from splitcalc.logs.allowed import BURIED, OFFSETS, SHARE, STATES, allowed, distances
+from splitcalc.logs.allowed import FIRST_BITE
+from splitcalc.logs.limits import OUTSIDE, narrowest_set, past_limits
 from splitcalc.logs.report import acting_on, find, in_set
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.shapes.section import Section
 from splitcalc.stress.normal_and_shear import signed_stresses
 from splitcalc.stress.web import web_stress
 from splitcalc.thrust.frame import Log
+from splitcalc.thrust.statics import Actions
 
 CORNERS = ("top left", "top right", "bottom left", "bottom right")
-OUTSIDE = "outside"
+MOVING, FIXED = TOOLS = ("moving tool", "fixed tool")
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Present:
-    """Arrays over the stations. [m, Pa]
+    """One log on one machine. Arrays over the stations `x`. [m, Pa]
 
-    corners : normal stress with its sign at the four outermost fibres; web : equivalent stress at
-    the top of the web, None for a closed section; set : narrowest set that holds the log
+    sigma : normal stress with its sign at all stress points, shape (stations, points); web :
+    equivalent stress at the top of the web, None for a closed section; set : narrowest set that
+    holds the log, `past` says in words why none does; findings : one a check and set that holds it
     """
 
+    numbers: Numbers
     log: Log
-    x: np.ndarray
-    corners: dict[str, np.ndarray]
+    state: str
+    acting: Actions
+    sigma: np.ndarray
     web: np.ndarray | None
     set: str
-    state: str
+    past: tuple[str, ...]
     findings: tuple[Finding, ...]
 
+    @property
+    def x(self) -> np.ndarray:
+        return self.acting.x[:, 0]
 
-def log_by_ram(*, length: float, up: float, tan_up: float, tan_left: float) -> Log:
-    """A log by its contact on the moving tool, `up` from the axis, and the slopes of the thrust.
+    @property
+    def corners(self) -> dict[str, np.ndarray]:
+        """Normal stress at the four outermost fibres. [Pa]"""
+        points = corner_points(self.numbers.section)
+        return {name: self.sigma[:, k] for name, k in zip(CORNERS, points, strict=True)}
 
-    Sideways it stays on the middle of the fixed tool: an edge holds where it bites. [m]
+
+def log_through(
+    *, pivot: str, distance: float, left: float, up: float, tan_left: float, tan_up: float
+) -> Log:
+    """A log by its contact on one of the two `TOOLS` and the slopes of its thrust.
+
+    Parameters
+    ----------
+    pivot : the tool that `left` and `up` are about, offsets from the cylinder's axis [m]
+    distance : of the contact points along x [m]
+    tan_left, tan_up : slopes, positive when further left or higher at the fixed tool
     """
-    return Log(length, -length * tan_left, up, 0.0, up + length * tan_up)
-
-
-def narrowest_set(numbers: Numbers, log: Log) -> tuple[str, str]:
-    """(set, state) that the log belongs to; (`OUTSIDE`, "first bite") when none allows it."""
-    at = np.array(float(log.l_AB))
-    for set_name in SETS:
-        for state in STATES:
-            low, high = distances(numbers, state)
-            bounds = allowed(numbers, SHARE[set_name], state == BURIED, at)
-            slope = np.hypot(log.b_y - log.a_y, log.b_z - log.a_z) / log.l_AB
-            inside = low <= log.l_AB <= high and slope <= bounds.slope * (1 + 1e-9)
-            for name, (least, most) in zip(OFFSETS, bounds.ends, strict=True):
-                inside = inside and least - 1e-9 <= getattr(log, name) <= most + 1e-9
-            if inside:
-                return set_name, state
-    return OUTSIDE, STATES[0]
+    across, rise = distance * tan_left, distance * tan_up
+    if pivot == FIXED:
+        return Log(distance, left - across, up - rise, left, up)
+    return Log(distance, left, up, left + across, up + rise)
 
 
 def corner_points(section: Section) -> list[int]:
@@ -69,25 +77,29 @@ def corner_points(section: Section) -> list[int]:
     return [int(np.where(edge, side * y, -np.inf).argmax()) for edge in edges for side in (1, -1)]
 
 
-def present(checks: Sequence[Check], numbers: Numbers, log: Log, units: Any = "si") -> Present:
-    """Everything the picture of one log needs; one finding a check and set that holds the log.
+def present(
+    checks: Sequence[Check],
+    numbers: Numbers,
+    log: Log,
+    units: Any = "si",
+    state: str = FIRST_BITE,
+) -> Present:
+    """Everything the picture of one log needs.
 
-    A log that no set allows is judged by the extreme set's factors: `set` tells.
+    A log that no set allows is judged by the extreme set's factors: `set` and `past` tell.
     """
     acting = acting_on(numbers, log)
-    sigma = signed_stresses(numbers, acting)
-    set_name, state = narrowest_set(numbers, log)
-    sets = SETS if set_name == "usual" else SETS[1:]
+    set_name = narrowest_set(numbers, log, state)
+    sets = SETS if set_name == SETS[0] else SETS[1:]
     found = [find(check, numbers, acting, units, set=sets[0], state=state) for check in checks]
     return Present(
+        numbers,
         log,
-        acting.x[:, 0],
-        {
-            name: sigma[:, point]
-            for name, point in zip(CORNERS, corner_points(numbers.section), strict=True)
-        },
+        state,
+        acting,
+        signed_stresses(numbers, acting),
         web_stress(numbers, acting)[:, 0] if numbers.section.open else None,
         set_name,
-        state,
+        tuple(past_limits(numbers, log, state, units)) if set_name == OUTSIDE else (),
         tuple(in_set(finding, numbers, name) for finding in found for name in sets),
     )

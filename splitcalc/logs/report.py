@@ -10,8 +10,8 @@ import numpy as np
 
 from splitcalc.equations import Line, recording
 from splitcalc.findings import Check, Finding, worst_place
-from splitcalc.logs.allowed import bounds_met
-from splitcalc.logs.search import Spot, search
+from splitcalc.logs.limits import bounds_met
+from splitcalc.logs.search import Spot, Steps, finish, search
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.thrust.frame import Log, frame_of, stations
 from splitcalc.thrust.statics import Actions, actions
@@ -90,22 +90,30 @@ def in_set(finding: Finding, numbers: Numbers, set_name: str) -> Finding:
 
 def findings(checks: Sequence[Check], numbers: Numbers, units: Any = "si") -> list[Finding]:
     """Every check's finding for each set, at its worst allowed log."""
+    return finish(findings_in_steps(checks, numbers, units))
+
+
+def findings_in_steps(
+    checks: Sequence[Check], numbers: Numbers, units: Any = "si"
+) -> Steps[list[Finding]]:
+    """The same, pausing every few milliseconds."""
     out = []
     for check in checks:
         does, why = check.applies(numbers)
-        best: dict[tuple[str, str], Spot] = {}
+        best: dict[str, Spot] = {}
         if does:
             why = NO_LOG
             try:
-                best = search([check], numbers)
+                best = yield from search(check, numbers)
             except FloatingPointError as error:
                 why = str(error)
         for set_name in SETS:
-            spot = best.get((check.id, set_name))
+            spot = best.get(set_name)
             if spot is None:
                 nothing = Finding(check, set_name, does, given=not does, why=why, units=units)
                 out.append(nothing)
                 continue
+            yield
             bound = bounds_met(numbers, set_name, spot.state, spot.log)
             about = {"set": set_name, "state": spot.state, "bound": bound}
             out.append(find(check, numbers, acting_on(numbers, spot.log), units, **about))

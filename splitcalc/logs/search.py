@@ -8,10 +8,10 @@ worst are evaluated; the finding looks at all of them again.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Generator, Sequence
 from dataclasses import dataclass, replace
 from itertools import product
-from typing import Any, NamedTuple
+from typing import Any, NamedTuple, TypeVar
 
 import numpy as np
 
@@ -43,6 +43,19 @@ ROUNDS, TRIES, SWINGS, FINER = 4, 9, 5, 4.0
 KEPT = 3  # peaks of each set that are refined
 NEAR = 0.9  # a peak this near to the worst is refined
 SEEN = 0.7  # a station or a point that came this near to the worst at a glance is looked at again
+
+
+T = TypeVar("T")
+Steps = Generator[None, None, T]  # work that pauses now and then, and what it comes to
+
+
+def finish(steps: Steps[T]) -> T:
+    """Runs steps to their end without a pause."""
+    while True:
+        try:
+            next(steps)
+        except StopIteration as end:
+            return end.value
 
 
 @dataclass(frozen=True)
@@ -85,20 +98,20 @@ def values_at(
     return demand_over_capacity(check, numbers, actions(frame, x))
 
 
-def search(checks: Sequence[Check], numbers: Numbers) -> dict[tuple[str, str], Spot]:
-    """The worst log for each (check id, set); a set that allows no log at all is left out."""
-    return {(c.id, name): spot for c in checks for name, spot in _worst(c, numbers).items()}
+def search(check: Check, numbers: Numbers) -> Steps[dict[str, Spot]]:
+    """The worst log of each set for one check; a set that allows no log at all is left out.
 
-
-def _worst(check: Check, numbers: Numbers) -> dict[str, Spot]:
-    """The worst log of each set for one check."""
+    In steps of a few milliseconds, so that a page can stay awake meanwhile.
+    """
     glance = _coarse(numbers, GLANCE, critical=False)
     if not glance:
         return {}
     _, kept = _look(check, numbers, glance, slice(None))
+    yield
     numbers = numbers.at_point(kept.points)
     spots, _ = _look(check, numbers, _coarse(numbers, DISTANCES, critical=True), kept.stations)
     for _ in range(ROUNDS):
+        yield
         nets = [_nearer(numbers, spot) for spot in spots]
         seen, _ = _look(check, numbers, nets, kept.stations)
         finer = [replace(s, reach=s.reach / FINER, swing=s.swing / FINER) for s in [*seen, *spots]]

@@ -7,6 +7,7 @@ from collections.abc import Mapping, Sequence
 from typing import Any
 
 from splitcalc.findings import Finding, margin_text
+from splitcalc.logs.present import Present
 from splitcalc.logs.report import governing
 from splitcalc.units import Dimension, number, show
 
@@ -40,6 +41,23 @@ def shortfall(utilisation: float) -> str:
     percent = abs(utilisation - 1) * 100
     amount = f"{percent:.1f}" if percent < 10 else f"{percent:.0f}"
     return f"is {amount} % {'over' if utilisation > 1 else 'under'} its limit"
+
+
+def this_log(now: Present, units: Any) -> str:
+    """What governs under one log, and which limits it is past."""
+    worst = governing(now.findings)
+    if worst is None:
+        return "nothing was checked."
+    if worst.utilisation is None or worst.log is None or worst.x is None:
+        return f"{worst.check.title} can't be given: {worst.why}."
+    where = show(worst.x, Dimension.LENGTH, units, 3)
+    told = (
+        f"({log_words(worst.log, units)}) {worst.check.title} governs and "
+        f"{shortfall(worst.utilisation)} of {worst.set} logs, at x = {where}."
+    )
+    if now.past:
+        told += f" Not an allowed log: {'; '.join(now.past)}. It is judged as an extreme one."
+    return told
 
 
 def sentence(results: Sequence[Finding]) -> str:

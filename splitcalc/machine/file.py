@@ -6,10 +6,13 @@ found, what is allowed, and the nearest known key for an unknown one.
 
 from __future__ import annotations
 
+import copy
+import functools
 import hashlib
+import re
 import tomllib
-from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from collections.abc import Callable, Iterator, Mapping
+from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import Any
 
@@ -40,11 +43,30 @@ class Machine:
     document : all inputs, defaults filled in
     given : dotted keys that the person typed
     digest : SHA-256 of the file's bytes, for the foot of a page
+    tables : what the file says, parsed and not yet read
+    path : of the file, where it was read from one
     """
 
     document: Document
     given: frozenset[str]
     digest: str
+    tables: Mapping[str, Any] = field(repr=False, compare=False)
+    path: Path | None = field(default=None, compare=False)
+
+    def changed(self, changes: Mapping[str, str]) -> Machine:
+        """The machine with other texts at some dotted keys, such as `"cylinder.bore": "5 in"`.
+
+        The file is left alone, and so is `digest`: it tells which file the changes are meant for.
+
+        Raises
+        ------
+        InputError : when the result can't be used, with all problems
+        """
+        tables = copy.deepcopy(dict(self.tables))
+        for key, text in changes.items():
+            table, name = holder(tables, key, dict)
+            table[name] = text
+        return replace(_machine(tables, self.digest), path=self.path)
 
     @property
     def title(self) -> str:
@@ -143,12 +165,46 @@ def parse_machine(data: bytes) -> Machine:
         tables = tomllib.loads(text.replace("\r\n", "\n"))
     except (ValueError, RecursionError) as error:  # ValueError: also a number without end
         raise InputError([Problem("file", f"not TOML: {error}")]) from None
-    converter().register_structure_hook(Family, _section)
+    return _machine(tables, hashlib.sha256(data).hexdigest())
+
+
+def _machine(tables: Mapping[str, Any], digest: str) -> Machine:
+    _teach_sections()
     document = read(Document, tables)
     problems = misfits(document)
     if problems:
         raise InputError(problems)
-    return Machine(document, frozenset(_typed(tables)), hashlib.sha256(data).hexdigest())
+    return Machine(document, frozenset(_typed(tables)), digest, tables)
+
+
+@functools.cache
+def _teach_sections() -> None:
+    """Once: every registration makes the converter forget the readers that it has made."""
+    converter().register_structure_hook(Family, _section)
+
+
+def holder(tables: Any, key: str, make: Callable[[], Any]) -> tuple[Any, str]:
+    """The table that holds a dotted key, and the last name; a missing table is made.
+
+    Raises
+    ------
+    KeyError : when the key leads through something that is not there or no table
+    """
+    *path, name = key.split(".")
+    for step in path:
+        part = re.fullmatch(r"(\w+)\[(\d+)\]", step)
+        if part is None:
+            if step not in tables:
+                tables[step] = make()
+            tables = tables[step]
+        else:
+            rows, number = tables.get(part[1], ()), int(part[2])
+            if not 1 <= number <= len(rows):
+                raise KeyError(f"{key}: there are {len(rows)} tables [[{part[1]}]]")
+            tables = rows[number - 1]
+        if not isinstance(tables, Mapping):
+            raise KeyError(f"{key}: {step} is no table")
+    return tables, name
 
 
 def load(path: str | Path) -> Machine:
@@ -163,4 +219,4 @@ def load(path: str | Path) -> Machine:
             data = file.read(LARGEST_FILE + 1)
     except OSError as error:
         raise InputError([Problem("file", f"{path}: {error.strerror}")]) from None
-    return parse_machine(data)
+    return replace(parse_machine(data), path=Path(path))

@@ -5,9 +5,10 @@ from __future__ import annotations
 from collections.abc import Callable, Iterator
 from typing import Any
 
-from splitcalc.inputs import Entry, Problem
+from splitcalc.inputs import Problem
 from splitcalc.machine.document import Beam, Document
 from splitcalc.materials import STEELS
+from splitcalc.shapes.families import built, dimensions
 
 PADS = ("front_pad", "rear_pad", "pad_length")
 GUIDE = ("guide_front", "guide_length")
@@ -33,14 +34,6 @@ def unused(document: Document) -> set[str]:
     guide = PADS if document.sled.guide == "continuous" else GUIDE
     return {f"{name}.{key}" for name, tool in tools for key in idle[tool.kind]} | {
         f"sled.{key}" for key in guide
-    }
-
-
-def section_values(beam: Beam) -> dict[str, float | str]:
-    """The section's typed dimensions. [m]"""
-    return {
-        key: value.si if isinstance(value, Entry) else value
-        for key, value in vars(beam.section).items()
     }
 
 
@@ -86,8 +79,7 @@ def _beam(doc: Document) -> Found:
     if not rear.si < front.si:
         yield "beam.front_end", f'"{front.text}" must lie ahead of the rear end "{rear.text}"'
         return
-    values = section_values(beam)
-    wrong = beam.section.misfits(values)
+    wrong = beam.section.misfits(dimensions(beam.section))
     for text in wrong:
         yield f"beam.section.{text.partition(':')[0]}", text.partition(": ")[2]
     if not tool.weld_start.si < tool.weld_end.si:
@@ -109,7 +101,7 @@ def _beam(doc: Document) -> Found:
     if wrong:
         return
     shape = beam.section
-    section = shape.build(values)
+    section = built(shape)
     for i, stiffener in enumerate(beam.stiffeners, 1):
         if (stiffener.kind == "diaphragm") == shape.OPEN:
             fits = "full-depth pair, part-depth pair" if shape.OPEN else "diaphragm"
@@ -142,7 +134,7 @@ def nominal_wall(beam: Beam) -> float:
     """The thickest wall, as the steel's tables count it. [m]"""
     return max(
         value
-        for key, value in section_values(beam).items()
+        for key, value in dimensions(beam.section).items()
         if key.startswith(("t", "T")) and isinstance(value, float)
     )
 
@@ -216,9 +208,9 @@ def _sled(doc: Document) -> Found:
             f"at full stroke the front pad ends at {ahead * 1e3:.0f} mm, past the start of the "
             f'fixed tool\'s root weld "{doc.fixed_tool.weld_start.text}"',
         )
-    values = section_values(doc.beam)
-    if not doc.beam.section.misfits(values):
-        flange = doc.beam.section.build(values).b_f
+    shape = doc.beam.section
+    if not shape.misfits(dimensions(shape)):
+        flange = built(shape).b_f
         for key in ("push_strip", "gib_strip"):
             entry = getattr(sled, key)
             if entry is not None and entry.si > flange / 2:

@@ -16,8 +16,9 @@ from numpy import maximum, pi
 from splitcalc.equations import Line, equation, recording
 from splitcalc.inputs import Entry, walk
 from splitcalc.machine.document import GRIPS, Document, FixedTool, Tool
-from splitcalc.machine.fit import nominal_wall, pads_of, section_values
+from splitcalc.machine.fit import nominal_wall, pads_of
 from splitcalc.materials import STEELS
+from splitcalc.shapes.families import built, dimensions
 from splitcalc.shapes.section import Points, Section
 
 Array = Any
@@ -216,11 +217,14 @@ def _lift(value: Array) -> Array:
 
 def _section(document: Document, overrides: Overrides) -> Section:
     """The section's numbers, lifted to the shapes of this module."""
-    values: dict[str, Any] = section_values(document.beam)
     prefix = "beam.section."
     varied = {k.removeprefix(prefix): v for k, v in overrides.items() if k.startswith(prefix)}
+    shape = document.beam.section
+    if not varied:
+        return built(shape)
+    values: dict[str, Any] = dimensions(shape)
     values.update({k: np.asarray(v, dtype=float) for k, v in varied.items()})
-    section = document.beam.section.build(values)
+    section = shape.build(values)
     if not any(np.ndim(v) for v in varied.values()):
         return section
     points = {

@@ -5,6 +5,7 @@ All families are symmetric about z. `build` takes dimensions that are scalars or
 
 from __future__ import annotations
 
+import functools
 from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any, ClassVar
@@ -134,6 +135,17 @@ class PlateBox:
             if v[key] < v["c"] * (1 - 1e-9):
                 out.append(f"{key}: the {words} plate must be at least as wide as c, over the webs")
         return out
+
+
+def dimensions(family: Family) -> dict[str, float | str]:
+    """The typed dimensions. [m]"""
+    return {k: v.si if isinstance(v, Entry) else v for k, v in vars(family).items()}
+
+
+@functools.lru_cache(maxsize=256)
+def built(family: Family) -> Section:
+    """The section of the typed dimensions; made once, then kept."""
+    return family.build(dimensions(family))
 
 
 FAMILIES = {family.SHAPE: family for family in (RolledI, PlateI, Hollow, PlateBox)}

@@ -39,31 +39,17 @@ def jump(*, z_f: Array, z_s: Array, M_zt: Array) -> Array:
 
 @equation(gives="B", source=VLASOV)
 def bimoment(
-    *,
-    T_1: Array,
-    T_2: Array,
-    T_t: Array,
-    b_t: Array,
-    c_1: Array,
-    c_2: Array,
-    c_t: Array,
+    *, T_1: Array, T_2: Array, T_t: Array, b_t: Array, c_1: Array, c_2: Array, c_t: Array,
     c_b: Array,
-) -> Array:
+) -> Array:  # fmt: skip
     return T_1 * c_1 + T_2 * c_2 + T_t * c_t + b_t * c_b
 
 
 @equation(gives="T_w", source=VLASOV)
 def warping_torque(
-    *,
-    T_1: Array,
-    T_2: Array,
-    T_t: Array,
-    b_t: Array,
-    d_1: Array,
-    d_2: Array,
-    d_t: Array,
+    *, T_1: Array, T_2: Array, T_t: Array, b_t: Array, d_1: Array, d_2: Array, d_t: Array,
     d_b: Array,
-) -> Array:
+) -> Array:  # fmt: skip
     return -(T_1 * d_1 + T_2 * d_2 + T_t * d_t + b_t * d_b)
 
 

@@ -37,19 +37,9 @@ def bending_stress(
 
 @equation(gives="sigma_x", source=NAVIER + "; bimoment: V. Z. Vlasov (from memory)")
 def warping_stress(
-    *,
-    N: Array,
-    A: Array,
-    M_y: Array,
-    I_y: Array,
-    M_z: Array,
-    I_z: Array,
-    B: Array,
-    C_w: Array,
-    y: Array,
-    z: Array,
-    omega: Array,
-) -> Array:
+    *, N: Array, A: Array, M_y: Array, I_y: Array, M_z: Array, I_z: Array, B: Array, C_w: Array,
+    y: Array, z: Array, omega: Array,
+) -> Array:  # fmt: skip
     return N / A + M_y / I_y * z - M_z / I_z * y + B / C_w * omega
 
 
@@ -60,53 +50,25 @@ def st_venant_torque(*, T: Array, T_w: Array) -> Array:
 
 @equation(gives="tau", source=FLOW + "; St Venant T·t/J on the face where it adds")
 def open_shear(
-    *,
-    V_y: Array,
-    V_z: Array,
-    T_w: Array,
-    T_v: Array,
-    Q_z: Array,
-    Q_y: Array,
-    Q_w: Array,
-    I_z: Array,
-    I_y: Array,
-    C_w: Array,
-    J: Array,
-    t: Array,
-) -> Array:
+    *, V_y: Array, V_z: Array, T_w: Array, T_v: Array, Q_z: Array, Q_y: Array, Q_w: Array,
+    I_z: Array, I_y: Array, C_w: Array, J: Array, t: Array,
+) -> Array:  # fmt: skip
     return abs(V_y / I_z * Q_z + V_z / I_y * Q_y - T_w / C_w * Q_w) / t + abs(T_v) / J * t
 
 
 @equation(gives="tau", source=FLOW + "; Bredt's cell flow")
 def closed_shear(
-    *,
-    V_y: Array,
-    V_z: Array,
-    T: Array,
-    Q_z: Array,
-    Q_y: Array,
-    psi: Array,
-    I_z: Array,
-    I_y: Array,
+    *, V_y: Array, V_z: Array, T: Array, Q_z: Array, Q_y: Array, psi: Array, I_z: Array, I_y: Array,
     t: Array,
-) -> Array:
+) -> Array:  # fmt: skip
     return abs(V_y / I_z * Q_z + V_z / I_y * Q_y - T * psi) / t
 
 
 @equation(gives="sigma_max", source=NAVIER + ", at the worst corner")
 def largest_corner_stress(
-    *,
-    N: Array,
-    A: Array,
-    M_y: Array,
-    I_y: Array,
-    M_z: Array,
-    I_z: Array,
-    z_t: Array,
-    y_t: Array,
-    z_b: Array,
-    y_b: Array,
-) -> Array:
+    *, N: Array, A: Array, M_y: Array, I_y: Array, M_z: Array, I_z: Array, z_t: Array, y_t: Array,
+    z_b: Array, y_b: Array,
+) -> Array:  # fmt: skip
     sigma_t = abs(N / A + M_y * z_t / I_y) + abs(M_z) * y_t / I_z
     sigma_b = abs(N / A + M_y * z_b / I_y) + abs(M_z) * y_b / I_z
     return maximum(sigma_t, sigma_b)

@@ -45,15 +45,8 @@ def roll_decay(*, k_w: Array, G: Array, b_f: Array, t_f: Array) -> Array:
 
 @equation(gives="m_w", source=ROLL)
 def web_moment(
-    *,
-    kappa: Array,
-    T_1: Array,
-    T_2: Array,
-    T_t: Array,
-    c_1: Array,
-    c_2: Array,
-    c_t: Array,
-) -> Array:
+    *, kappa: Array, T_1: Array, T_2: Array, T_t: Array, c_1: Array, c_2: Array, c_t: Array,
+) -> Array:  # fmt: skip
     return -(kappa**2) * (T_1 * c_1 + T_2 * c_2 + T_t * c_t)
 
 

@@ -59,15 +59,8 @@ def front_pad_side(*, F: Array, tan_beta: Array, Y_1: Array) -> Array:
 
 @equation(gives="K", source=STATICS)
 def roll_couple(
-    *,
-    F: Array,
-    e: Array,
-    a_y: Array,
-    a_z: Array,
-    z_p: Array,
-    tan_alpha: Array,
-    tan_beta: Array,
-) -> Array:
+    *, F: Array, e: Array, a_y: Array, a_z: Array, z_p: Array, tan_alpha: Array, tan_beta: Array,
+) -> Array:  # fmt: skip
     return F * ((e + a_z - z_p) * tan_beta - a_y * tan_alpha)
 
 
@@ -108,63 +101,31 @@ def axial_force(*, F: Array, rho_m: Array, rho_t: Array) -> Array:
 
 @equation(gives="V_y", source=STATICS)
 def shear_side(
-    *,
-    F: Array,
-    tan_beta: Array,
-    Y_1: Array,
-    Y_2: Array,
-    rho_1: Array,
-    rho_2: Array,
-    rho_t: Array,
-) -> Array:
+    *, F: Array, tan_beta: Array, Y_1: Array, Y_2: Array, rho_1: Array, rho_2: Array, rho_t: Array,
+) -> Array:  # fmt: skip
     return F * tan_beta * rho_t + Y_1 * rho_1 + Y_2 * rho_2
 
 
 @equation(gives="V_z", source=STATICS)
 def shear_up(
-    *,
-    F: Array,
-    tan_alpha: Array,
-    Z_1: Array,
-    Z_2: Array,
-    rho_1: Array,
-    rho_2: Array,
-    rho_t: Array,
-) -> Array:
+    *, F: Array, tan_alpha: Array, Z_1: Array, Z_2: Array, rho_1: Array, rho_2: Array, rho_t: Array,
+) -> Array:  # fmt: skip
     return F * tan_alpha * rho_t + Z_1 * rho_1 + Z_2 * rho_2
 
 
 @equation(gives="M_y", source=STATICS)
 def moment_up(
-    *,
-    F: Array,
-    e: Array,
-    tan_alpha: Array,
-    M_yt: Array,
-    Z_1: Array,
-    Z_2: Array,
-    rho_m: Array,
-    rho_t: Array,
-    g_1: Array,
-    g_2: Array,
-    g_t: Array,
-) -> Array:
+    *, F: Array, e: Array, tan_alpha: Array, M_yt: Array, Z_1: Array, Z_2: Array, rho_m: Array,
+    rho_t: Array, g_1: Array, g_2: Array, g_t: Array,
+) -> Array:  # fmt: skip
     return M_yt * rho_t - F * e * rho_m - F * tan_alpha * g_t - Z_1 * g_1 - Z_2 * g_2
 
 
 @equation(gives="M_z", source=STATICS)
 def moment_side(
-    *,
-    F: Array,
-    tan_beta: Array,
-    M_zt: Array,
-    Y_1: Array,
-    Y_2: Array,
-    rho_t: Array,
-    g_1: Array,
-    g_2: Array,
-    g_t: Array,
-) -> Array:
+    *, F: Array, tan_beta: Array, M_zt: Array, Y_1: Array, Y_2: Array, rho_t: Array, g_1: Array,
+    g_2: Array, g_t: Array,
+) -> Array:  # fmt: skip
     return M_zt * rho_t + F * tan_beta * g_t + Y_1 * g_1 + Y_2 * g_2
 
 

@@ -17,8 +17,7 @@ from scipy.integrate import simpson
 from scipy.linalg import solve_banded
 
 from splitcalc.logs.present import corner_points
-from splitcalc.machine.fit import section_values
-from splitcalc.shapes.families import PlateBox, PlateI
+from splitcalc.shapes.families import PlateBox, PlateI, dimensions
 from splitcalc.shapes.section import Section
 from splitcalc.shapes.tables import look_up
 from splitcalc.stress.bimoment import bounds, decay
@@ -37,7 +36,7 @@ MEGA = 1e6
 
 def table_section(name: str, **changed: float) -> Section:
     row = look_up(name)[1]
-    return row.build(section_values(SimpleNamespace(section=row)) | changed)
+    return row.build(dimensions(row) | changed)
 
 
 def machine(section: Section, start: float, end: float, **more: Any) -> Any:
