@@ -20,7 +20,8 @@ class Canvas:
     for the PNG; so a picture that follows the hand has 1.
 
     Draw on `figure` whatever stands still, hand what moves to `moving`, then alternate between
-    setting the data of what moves and `render`. Axis limits belong to what stands still.
+    setting the data of what moves and `render`. Axis limits belong to what stands still. Axes
+    stay where they are put: a layout engine would shift panels under a moving curve.
 
     What moves lands on top of everything that stands still, whatever its zorder says. A limit
     line or a text that must lie above a moving bar is therefore handed to `moving` as well.
@@ -34,10 +35,8 @@ class Canvas:
             figsize=(width / CSS_DPI, height / CSS_DPI),
             dpi=CSS_DPI * scale,
             facecolor="white",  # opaque: the PNG has no alpha
-            layout="constrained",
         )
         self._agg = FigureCanvasAgg(self.figure)
-        self._layout = self.figure.get_layout_engine()
         self._moving: list[Artist] = []
         self._background: Any = None
         self._shown: bytes | None = None
@@ -53,18 +52,15 @@ class Canvas:
         self.thaw()
 
     def freeze(self) -> None:
-        """Lays the figure out and draws the background that later pictures begin with."""
+        """Draws the background that later pictures begin with."""
         self._agg.draw()
-        # Panels must not shift under a moving curve, and the engine costs as much as a drawing.
-        self.figure.set_layout_engine("none")
         self._background = self._agg.copy_from_bbox(self.figure.bbox)
 
     def thaw(self) -> None:
         """Call it after a change to what stands still, such as a limit that grew.
 
-        The next picture lays the figure out anew and redraws the background.
+        The next picture draws the background anew.
         """
-        self.figure.set_layout_engine(self._layout)
         self._background = None
 
     def render(self, inputs: Mapping[str, Any]) -> bytes:
