@@ -9,7 +9,6 @@ import pytest
 from ipywidgets import FloatSlider
 
 from splitcalc.sheet import live as module
-from splitcalc.sheet.controls import slider
 from splitcalc.sheet.live import Live
 
 
@@ -309,40 +308,39 @@ def test_error_in_a_slice_is_shown(loop_runs: bool) -> None:
     assert page.errors == ["no log is allowed"]
 
 
-# Controls
-
-OFFSET: dict[str, Any] = {
-    "label": "Thrust offset",
-    "unit": "mm",
-    "value": 150.0,
-    "low": 50.0,
-    "high": 300.0,
-    "step": 0.5,
-    "digits": 1,
-    "tooltip": "Height of the thrust above the top flange",
-}
+def test_changes_made_together_are_drawn_once() -> None:
+    page = Page()
+    with page.live.together():
+        page.control.value = 1.0
+        page.control.value = 2.0
+        assert page.drawn == []
+    assert page.drawn == [2.0]
 
 
-def test_slider_shows_label_unit_and_digits() -> None:
-    control = slider(**OFFSET)
-    assert control.description == "Thrust offset (mm)"
-    assert control.readout_format == ".1f"
-    assert (control.min, control.value, control.max, control.step) == (50.0, 150.0, 300.0, 0.5)
-    assert control.continuous_update
+def test_what_a_button_does_wrong_is_shown() -> None:
+    page = Page()
+    page.live.guard(fail, 60.0)
+    assert page.errors == ["no lever arm at 60.0"]
 
 
-@pytest.mark.parametrize(
-    ("wrong", "message"),
-    [
-        ({"value": 301.0}, "does not lie"),
-        ({"value": float("nan")}, "does not lie"),
-        ({"low": 400.0}, "does not lie"),
-        ({"step": 0.25}, "can't be seen"),
-        ({"step": 0.0}, "can't be seen"),
-        ({"label": "Offset of the thrust above the flange"}, "label"),
-        ({"high": 1e9}, "characters"),
-    ],
-)
-def test_slider_that_would_mislead_is_refused(wrong: dict[str, Any], message: str) -> None:
-    with pytest.raises(ValueError, match=message):
-        slider(**OFFSET | wrong)
+def test_work_rests_as_long_as_it_asks_for_and_a_change_ends_the_rest() -> None:
+    page, done = Page(), []
+
+    def work() -> Generator[float | None, None, None]:
+        yield None
+        done.append("before")
+        yield 3600.0
+        done.append("after an hour")
+
+    async def main() -> None:
+        page.live.run_slices(work())
+        await until(lambda: done)
+        page.control.value = 1.0
+        await until(lambda: page.drawn)
+        for _ in range(100):
+            await asyncio.sleep(0)
+
+    run(main())
+    assert done == ["before"]
+    page.live.run_slices(work())  # where no loop runs, nobody waits
+    assert done == ["before", "before", "after an hour"]

@@ -1,13 +1,11 @@
 """Keeps a picture with its controls: the newest values are drawn, stale ones are left out."""
 
 import asyncio
-import math
-from collections.abc import Callable, Generator, Mapping
+from collections.abc import Callable, Generator, Iterator, Mapping
+from contextlib import contextmanager
 from threading import RLock
 from time import perf_counter
 from typing import Any
-
-from ipywidgets import ValueWidget
 
 # Changes that wait in the kernel's queue are let in before anything is drawn. Giving the loop one
 # turn (call_soon) is too little: a message takes several turns from the socket to its widget, and
@@ -15,11 +13,15 @@ from ipywidgets import ValueWidget
 PAUSE = 0.002  # seconds
 SLICE = 0.010  # seconds of background work between two pauses
 
+Work = Generator[float | None, None, None]
+
 _DONE = object()
 
 
 class Live:
     """Calls `update` with the values of all `controls`, by name, after any of them changed.
+
+    A control is a widget, or anything else with a trait `value`.
 
     Inside a running asyncio loop, as in a notebook's kernel, changes that come together lead to
     one update with the newest values. Where no loop runs (a test, a script) each is drawn at once.
@@ -33,7 +35,7 @@ class Live:
 
     def __init__(
         self,
-        controls: Mapping[str, ValueWidget],
+        controls: Mapping[str, Any],
         update: Callable[[dict[str, Any]], None],
         on_error: Callable[[Exception], None],
     ) -> None:
@@ -41,8 +43,9 @@ class Live:
         self._update = update
         self._on_error = on_error
         self._pending: object | None = None  # stands for the one change that is not drawn yet
-        self._work: Generator[object, None, None] | None = None
+        self._work: Work | None = None
         self._drawing = False
+        self._held = False
         # JupyterLab hands a widget's changes to a thread beside the one that runs the cells.
         self._lock = RLock()
         for control in self._controls.values():
@@ -53,12 +56,30 @@ class Live:
         self._mark_change()
         self._draw_pending()
 
-    def run_slices(self, work: Generator[object, None, None]) -> None:
+    @contextmanager
+    def together(self) -> Iterator[None]:
+        """Changes made inside lead to one update, also where no loop runs."""
+        self._held = True
+        try:
+            yield
+        finally:
+            self._held = False
+        self._changed(None)
+
+    def guard(self, action: Callable[..., None], *arguments: object) -> None:
+        """Runs what a button does; an exception goes to `on_error`."""
+        try:
+            action(*arguments)
+        except Exception as error:  # of any kind: unseen, it would leave a stale picture
+            self._on_error(error)
+
+    def run_slices(self, work: Work) -> None:
         """Runs slow work to its end, in place of what ran before, between the person's changes.
 
         Inside a running loop it is resumed in slices of 10 ms, so from one yield to the next it
-        should take a few milliseconds at most; the next change of a control drops it (closes it).
-        Where no loop runs it runs to its end before this returns.
+        should take a few milliseconds at most; work that yields a number rests so many seconds.
+        The next change of a control drops it (closes it). Where no loop runs it runs to its end
+        before this returns, without a rest.
         """
         # An update that changed a control hands over work that is stale already.
         self._work = work if self._pending is None else None
@@ -71,6 +92,8 @@ class Live:
         self._pending = self._work = None
 
     def _changed(self, _: object) -> None:
+        if self._held:
+            return
         change = self._mark_change()
         loop = _running_loop()
         if loop is None:
@@ -96,34 +119,29 @@ class Live:
                 while self._pending is not None:
                     self._pending = None
                     values = {name: control.value for name, control in self._controls.items()}
-                    self._guard(self._update, values)
+                    self.guard(self._update, values)
             finally:
                 self._drawing = False
 
-    def _resume_soon(self, work: Generator[object, None, None]) -> None:
+    def _resume_soon(self, work: Work, rest: float = PAUSE) -> None:
         loop = _running_loop()
         if loop is None:
             self._resume(work)
         else:
-            loop.call_later(PAUSE, self._resume, work)
+            loop.call_later(rest, self._resume, work)
 
-    def _resume(self, work: Generator[object, None, None]) -> None:
+    def _resume(self, work: Work) -> None:
         with self._lock:
-            self._guard(self._advance, work)
+            self.guard(self._advance, work)
 
-    def _advance(self, work: Generator[object, None, None]) -> None:
-        end = perf_counter() + SLICE if _running_loop() else math.inf
-        while work is self._work and next(work, _DONE) is not _DONE:
-            if perf_counter() >= end:
-                self._resume_soon(work)
+    def _advance(self, work: Work) -> None:
+        awake = _running_loop() is None
+        end = perf_counter() + SLICE
+        while work is self._work and (rest := next(work, _DONE)) is not _DONE:
+            if not awake and (rest or perf_counter() >= end):
+                self._resume_soon(work, max(PAUSE, rest or 0.0))  # type: ignore[call-overload]
                 return
         work.close()
-
-    def _guard(self, action: Callable[..., None], *arguments: object) -> None:
-        try:
-            action(*arguments)
-        except Exception as error:  # of any kind: unseen, it would leave a stale picture
-            self._on_error(error)
 
 
 def _running_loop() -> asyncio.AbstractEventLoop | None:

@@ -1,169 +1,386 @@
-"""The main-beam page: sliders for one log, the living picture, the sentence."""
+"""The main-beam page: a machine and a log under sliders, the living picture, the bars, saving."""
 
 from __future__ import annotations
 
 import html
-import math
+from collections.abc import Callable, Generator
 from typing import Any
 
-from ipywidgets import HTML, GridBox, Image, Layout, VBox
+from ipywidgets import HTML, Layout, VBox
 
 from splitcalc.cautions import CAUTIONS, NOT_COVERED
 from splitcalc.checks import ALL, NOT_YET
-from splitcalc.draw.main_beam import HEIGHT, WIDTH, MainBeamPicture
-from splitcalc.findings import Finding, margin_text
-from splitcalc.logs.present import OUTSIDE, Present, log_by_ram, present
-from splitcalc.logs.report import findings, governing
-from splitcalc.logs.words import log_words, sentence, shortfall, still_open
-from splitcalc.machine.file import Machine
-from splitcalc.machine.numbers import Numbers
-from splitcalc.sheet.controls import slider
-from splitcalc.sheet.live import Live
-from splitcalc.units import Dimension, factor, number, show, unit_text
+from splitcalc.draw.main_beam import MainBeamPicture, still
+from splitcalc.draw.section import section_svg
+from splitcalc.findings import Check, Finding
+from splitcalc.inputs import InputError
+from splitcalc.logs.limits import sled_reach
+from splitcalc.logs.present import Present, present
+from splitcalc.logs.report import findings, findings_in_steps, governing
+from splitcalc.logs.words import sentence, still_open, this_log
+from splitcalc.machine.draft import Draft, drop, keep, kept
+from splitcalc.machine.file import Machine, load
+from splitcalc.machine.numbers import SETS
+from splitcalc.machine.save import SaveError, save
+from splitcalc.sheet.bars import bars, by_check_and_set
+from splitcalc.sheet.controls import buttons_of
+from splitcalc.sheet.live import Live, Work
+from splitcalc.sheet.log_controls import LogControls, log_of, plain, straight, values_of
+from splitcalc.sheet.machine_controls import MOVES, MachineControls
+from splitcalc.sheet.page import Page, button, heading, named, row, small
+from splitcalc.sheet.style import ROW
+from splitcalc.thrust.frame import Log
+from splitcalc.units import Dimension, show
 
-STALE = "splitcalc-stale"
-STYLE = f"<style>.{STALE} img, img.{STALE} {{ opacity: 0.25; filter: grayscale(1); }}</style>"
-PAST_GRIP = 1.1  # the slope sliders go this far past the grip, so that its limit can be seen
+REST = 0.4  # seconds that the hand rests before equations are written and the draft is kept
 
 
 class MainBeam:
-    """The page's parts, for whoever wants to arrange them anew; `page` is all of them."""
+    """The page and what it knows; `page` is what a notebook shows.
+
+    file : the machine as it stands in its file; machine : with the changes of the controls
+    now : the log of the controls; worst : findings at the worst allowed logs of `machine`
+    controls : by name, each with a `value`
+    """
+
+    live: Live
 
     def __init__(self, machine: Machine) -> None:
-        self.numbers: Numbers = machine.numbers()
+        self.file = self.machine = machine
         self.units = machine.units
-        self.worst = findings(ALL, self.numbers, self.units)
-        self.controls = self._controls()
-        self.picture = MainBeamPicture(self.numbers, self.worst, self.units)
-        self.image = Image(
-            format="png", width=WIDTH, height=HEIGHT,
-            layout=Layout(width=f"{WIDTH}px", height=f"{HEIGHT}px", flex="0 0 auto"),
-        )  # fmt: skip
-        self.sentence = HTML(layout=Layout(width=f"{WIDTH}px", min_height="7.2em"))
-        self.values = HTML(layout=Layout(width=f"{WIDTH}px"))
-        self.live = Live(self.controls, self._update, self._show_error)
+        self.checks: tuple[Check, ...] = ALL
+        self.numbers = machine.numbers()
+        self.worst = findings(self.checks, self.numbers, self.units)
+        worst = governing(self.worst)
+        self.chosen = worst.check.id if worst else self.checks[0].id
+        self.now: Present | None = None
+        self.pinned: Present | None = None
+        self._sliders: list[str] = []  # that a person added: keys of the file
+        self._lines: dict[str, Callable[[Present], Any]] = {}  # likewise
+        self._changes: dict[str, str] = {}
+        self._search: Generator[None, None, list[Finding]] | None = None
+        self._pictures: dict[str, MainBeamPicture] = {}  # by what they show under the machine
+        self._panel = "stress"
+        self._pin = self._button("pin curves", "keep the present curves, to compare", self.pin)
+        go = [
+            self._button(f"worst {name} log", f"{name} logs, of the chosen check", self.go, name)
+            for name in SETS
+        ]
+        self.parts = Page(pin=self._pin, worst=go, foot=_foot(self.numbers.notes))
+        self.page = self.parts.box
+        self._make_names()
+        self._make_controls(straight(self.numbers))
+        self._kept = None if machine.path is None else kept(machine.path)
+        self._offer_draft()
         self.live.draw()
-        self.page = VBox(
-            [
-                HTML(STYLE),
-                GridBox(
-                    list(self.controls.values()),
-                    layout=Layout(grid_template_columns=f"repeat(2, {WIDTH // 2}px)"),
-                ),
-                self.sentence,
-                self.image,
-                self.values,
-                HTML(_small(_foot(self.numbers.notes)), layout=Layout(width=f"{WIDTH}px")),
-            ]
+
+    def _button(self, text: str, tooltip: str, action: Callable[..., None], *args: object) -> Any:
+        return button(text, tooltip, lambda: self.live.guard(action, *args))
+
+    def _make_controls(self, values: dict[str, Any]) -> None:
+        """New controls: for a file read anew, for other units, for one more slider."""
+        log = LogControls(self.numbers, self.units, values)
+        machine = MachineControls(self.file, self.machine, self.units, self._sliders)
+        units = buttons_of(
+            "units", (("US", "us"), ("SI", "si")), self.units,
+            "to show; typed numbers carry their own, the file stays as it is",
+        )  # fmt: skip
+        units.observe(lambda change: self.live.guard(self.show_in, change["new"]), "value")
+        if hasattr(self, "live"):
+            self.live.close()
+        self._log, self._machine = log, machine
+        self.controls = {**log.controls, **machine.controls, "view": self.parts.view}
+        self.live = Live(self.controls, self._update, self._show_error)
+        self._offer = VBox()
+        self.parts.rail.children = [
+            heading("log"), log.box, heading("machine"), machine.box, units,
+            row(self._button("back to file", "the file's values, read anew", self.back),
+                self._button("save", "write the changes to the machine file", self.save)),
+            self.parts.unsaved_line, self.parts.message, self._offer,
+        ]  # fmt: skip
+
+    def _make_names(self) -> None:
+        """A button beside each bar."""
+        names = []
+        for check in self.checks:
+            name = self._button(check.title, "its equations, for this log", self.choose, check.id)
+            name.layout = Layout(height=f"{ROW}px")
+            if check.id == self.chosen:
+                name.add_class("splitcalc-chosen")
+            names.append(name)
+        self.parts.names.children = names
+
+    # --- what the buttons do ------------------------------------------------------------------
+
+    def choose(self, check_id: str) -> None:
+        """Chooses a check: shows its equations, and the buttons go to its worst logs."""
+        self.chosen = check_id
+        self._make_names()
+        self.parts.view.value = "equations"
+        self.live.draw()
+
+    def go(self, set_name: str) -> None:
+        """Sets the controls to the worst log of the chosen check in a set."""
+        finding = by_check_and_set(self.worst).get((self.chosen, set_name))
+        if self._search is not None or finding is None or finding.log is None:
+            why = "it is being searched" if self._search is not None else finding and finding.why
+            self.parts.say(f"There is no worst {set_name} log of this check to go to: {why}.")
+            return
+        with self.live.together():
+            self._log.take(_values(finding, self._log.controls["pivot"].value))
+            if self.parts.view.value == "equations":
+                self.parts.view.value = "stress"
+        self.parts.say(
+            f"Worst {set_name} log of “{finding.check.title}”: {finding.log['bound']}."
         )
 
-    def _controls(self) -> dict[str, Any]:
-        numbers, length = self.numbers, unit_text(Dimension.LENGTH, self.units)
-        per = factor(Dimension.LENGTH, self.units)
-        us = self.units == "us"
-        steep = math.floor(math.degrees(math.atan(PAST_GRIP * numbers.grip)))
-        step, digits = (0.05, 2) if us else (1.0, 0)
-        contact = numbers.moving
-        least = math.ceil(numbers.shortest * per / step) * step
-        longest = math.floor(numbers.longest * per / step + 1e-9) * step
+    def pin(self) -> None:
+        """Keeps the present curves in the picture, or takes them away again."""
+        self.pinned = self.now if self.pinned is None else None
+        self._pin.description = "pin curves" if self.pinned is None else "unpin curves"
+        for picture in self._pictures.values():
+            picture.pin(self.pinned)
+        self.live.draw()
 
-        def offset(low: float, high: float, label: str, tooltip: str) -> Any:
-            ends = [round(end * per / step) * step for end in (low, high)]
-            return slider(
-                label=label, unit=length, value=0.0, low=min(ends[0], 0.0),
-                high=max(ends[1], 0.0), step=step, digits=digits, tooltip=tooltip,
-            )  # fmt: skip
+    def back(self) -> None:
+        """The values of the file, read anew."""
+        if self.file.path is not None:
+            self.file = load(self.file.path)
+        self._begin(self.file, {})
+        self._make_controls(straight(self.numbers))
+        self.parts.say("Back to the values of the file.")
+        self.live.draw()
 
-        def angle(label: str, tooltip: str) -> Any:
-            return slider(
-                label=label, unit="deg", value=0.0, low=-steep, high=steep, step=0.25, digits=2,
-                tooltip=tooltip,
-            )  # fmt: skip
+    def save(self) -> None:
+        """Writes the machine's changes to its file; the log is not part of it."""
+        changes = self._machine.changes()
+        if self.file.path is None:
+            raise SaveError("This machine was not read from a file: there is none to save to.")
+        if not changes:
+            self.parts.say("Nothing to save: the machine is as in its file.")
+            return
+        self.file = save(self.file.path, self.file, changes)
+        values = self._log.values()
+        self._begin(self.file, {})
+        self._make_controls(values)
+        self.parts.say(f"Saved: {_told(changes)}.")
+        self.live.draw()
 
-        return {
-            "skew_up": angle("skew up", "slope of the thrust, up towards the fixed tool"),
-            "skew_left": angle(
-                "skew left", "slope of the thrust, left; the log stays centred on the fixed tool"
-            ),
-            "offset_up": offset(
-                contact.low, contact.high, "ram offset up",
-                "where the log meets the moving tool, above the cylinder's axis",
-            ),
-            "log_length": slider(
-                label="log length", unit=length, value=longest, low=least, high=longest,
-                step=step, digits=digits, tooltip="distance of the contact points at first bite",
-            ),
-        }  # fmt: skip
+    def show_in(self, units: Any) -> None:
+        """Shows the other unit system; the state stays what it is."""
+        values = self._log.values()
+        self.units = units
+        self._begin(self.machine, self._changes)
+        self._make_controls(values)
+        self.live.draw()
 
-    def _present(self, values: dict[str, float]) -> Present:
-        per = factor(Dimension.LENGTH, self.units)
-        log = log_by_ram(
-            length=values["log_length"] / per,
-            up=values["offset_up"] / per,
-            tan_up=math.tan(math.radians(values["skew_up"])),
-            tan_left=math.tan(math.radians(values["skew_left"])),
+    # --- a person's own -----------------------------------------------------------------------
+
+    def add_slider(self, key: str) -> None:
+        """A slider for any number of the machine file, by its dotted key.
+
+        Raises
+        ------
+        KeyError : for a key that is no number of the machine, or has no value
+        """
+        self._sliders.append(key)
+        try:
+            self._make_controls(self._log.values())
+        except KeyError:
+            self._sliders.remove(key)
+            raise
+        self.live.draw()
+
+    def add_line(self, name: str, stress: Callable[[Present], Any]) -> None:
+        """One more line along the beam; `stress` gives it [Pa] at the stations `now.x`."""
+        self._lines[name] = stress
+        self._pictures.clear()
+        self.live.draw()
+
+    def add_check(self, check: Check) -> None:
+        """One more check, with its bar, its worst logs and its equations."""
+        self.checks = (*(c for c in self.checks if c.id != check.id), check)
+        self._begin(self.machine, self._changes)
+        self._make_names()
+        self.live.draw()
+
+    def still(self, finding: Finding | None = None) -> Any:
+        """A picture for the printed page: of the controls' log, or of a finding's."""
+        now = self.now
+        if finding is not None and finding.log is not None:
+            now = self._present(_values(finding, "fixed tool"))
+        assert now is not None
+        return still(self.machine, now, self.worst, self.units)
+
+    # --- following the hand -------------------------------------------------------------------
+
+    def _update(self, controls: dict[str, Any]) -> None:
+        changes = self._machine.changes()
+        if changes != self._changes:
+            machine = self.file.changed(changes)
+            other = {key for key, _ in changes.items() ^ self._changes.items()}
+            self._begin(machine, changes, redraw=not other <= MOVES)
+        self._machine.tell([])
+        values = plain(controls)
+        self.now = self._present(values)
+        self._show(values)
+        self.parts.stale(False)
+        self.live.run_slices(self._afterwards(values))
+
+    def _begin(self, machine: Machine, changes: dict[str, str], redraw: bool = True) -> None:
+        """Another machine, other units, other checks: the worst logs are searched anew."""
+        self.machine, self._changes, self.numbers = machine, changes, machine.numbers()
+        if redraw:
+            self._pictures.clear()
+        self._search = findings_in_steps(self.checks, self.numbers, self.units)
+        self.parts.waiting(True)
+
+    def _present(self, values: dict[str, Any]) -> Present:
+        reach = sled_reach(self.numbers)
+        if not reach[0] <= values["distance"] <= reach[1]:
+            told = [show(x, Dimension.LENGTH, self.units, 3) for x in (values["distance"], *reach)]
+            raise ValueError(
+                f"log length, gap: at {told[0]} the sled does not stand on the beam; "
+                f"{told[1]} to {told[2]} are possible"
+            )
+        return present(self.checks, self.numbers, log_of(values), self.units, values["state"])
+
+    def _show(self, values: dict[str, Any]) -> None:
+        now = self.now
+        assert now is not None
+        view = values["view"]
+        if view != "equations":
+            self._panel = view
+        picture = self._picture(now)
+        governs = governing(now.findings)
+        x = float(now.x[0]) if governs is None or governs.x is None else governs.x
+        told = {**values, **self._changes, "units": self.units}
+        parts = self.parts
+        parts.image.value = picture.render(self.machine, now, told, x)
+        parts.labels.value = "".join(map(_label, picture.labels()))
+        svg = section_svg(now, int(abs(now.x - x).argmin()), self.units)
+        parts.section.value = f"<div class='splitcalc-drawn'>{svg}</div>"
+        parts.bars.value = bars(
+            self.checks,
+            now.findings,
+            self.worst,
+            () if self.pinned is None else self.pinned.findings,
         )
-        return present(ALL, self.numbers, log, self.units)
-
-    def _update(self, values: dict[str, float]) -> None:
-        now = self._present(values)
-        self.image.value = self.picture.render(now, values)
-        self.image.remove_class(STALE)
-        self.sentence.value = _paragraph(self._words(now))
-        self.values.value = _table([f for f in now.findings if f.applies])
-
-    def _words(self, now: Present) -> str:
-        worst = governing(now.findings)
-        if worst is None or worst.utilisation is None or worst.log is None:
-            return "Nothing can be given for this log."
-        where = show(worst.x, Dimension.LENGTH, self.units, 3)
-        kind = f"{log_words(worst.log, self.units)}"
-        if now.set == OUTSIDE:
-            kind += "; <b>not an allowed log</b>, judged as an extreme one"
-        return (
-            f"<b>This log</b> ({kind}): {html.escape(worst.check.title)} governs and "
-            f"{shortfall(worst.utilisation)}, at x = {where}. "
-            f"<b>All allowed logs</b>: {html.escape(sentence(self.worst))}"
-            f"{_small(still_open(NOT_YET))}"
+        all_logs = "being searched …" if self._search else sentence(self.worst)
+        parts.sentence.value = (
+            f"<div><b>This log</b> {html.escape(this_log(now, self.units))} "
+            f"<b>All allowed logs</b>: {html.escape(all_logs)}</div>{small(still_open(NOT_YET))}"
         )
+        parts.unsaved(_told(self._changes))
+        parts.show_view(view)
+
+    def _picture(self, now: Present) -> MainBeamPicture:
+        """The picture of the chosen panel, made when it is first wanted."""
+        if self._panel not in self._pictures:
+            picture = MainBeamPicture(
+                self.machine, now, self.worst, self.units, self._panel, self._lines
+            )
+            picture.pin(self.pinned)
+            self._pictures[self._panel] = picture
+        return self._pictures[self._panel]
+
+    def _afterwards(self, values: dict[str, Any]) -> Work:
+        """What can wait: the search, then, when the hand rests, equations and draft."""
+        yield None
+        while self._search is not None:
+            # not `yield from`: a drag drops this work, and the search goes on where it stands
+            try:
+                next(self._search)
+            except StopIteration as end:
+                self.worst, self._search = end.value, None
+                for picture in self._pictures.values():
+                    picture.set_worst(self.worst)
+                self.parts.waiting(False)
+                self._show(values)
+            yield None
+        if values["view"] == "equations":
+            self._show_equations()
+        yield REST
+        self._keep_draft(values)
+
+    def _show_equations(self) -> None:
+        assert self.now is not None
+        found = [f for f in self.now.findings if f.check.id == self.chosen]
+        worst = governing(found)
+        self.parts.equations.value = worst._repr_html_() if worst else ""
 
     def _show_error(self, error: Exception) -> None:
-        self.image.add_class(STALE)
-        text = html.escape(f"{error}" or type(error).__name__)
-        self.sentence.value = _paragraph(f"<b>No result for these values:</b> {text}")
+        if isinstance(error, SaveError):
+            self.parts.say(str(error), bad=True)
+            return
+        told = [str(error) or type(error).__name__]
+        if isinstance(error, InputError):
+            told = [str(problem) for problem in error.problems]
+            self._machine.tell(error.problems)
+        text = "<br>".join(map(html.escape, told))
+        self.parts.sentence.value = f"<div><b>No result for these values.</b> {text}</div>"
+        self.parts.stale(True)
+
+    # --- the draft ----------------------------------------------------------------------------
+
+    def _keep_draft(self, values: dict[str, Any]) -> None:
+        path, log = self.file.path, {k: values[k] for k in straight(self.numbers)}
+        if path is None or self._kept is not None:
+            return  # what an earlier session kept is not overwritten before it is answered
+        if self._changes or log != straight(self.numbers):
+            keep(path, Draft(self.file.digest, log, self._changes))
+        else:
+            drop(path)
+
+    def _offer_draft(self) -> None:
+        if self._kept is None:
+            return
+        other = self._kept.machine != self.file.digest
+        told = "An earlier session left values that were not saved"
+        text = f"{told}{'; the machine file has changed since' if other else ''}."
+        self._offer.children = [
+            named(HTML(small(text)), "message"),
+            row(self._button("take them back", "as they were left", self.take_back),
+                self._button("drop them", "for good", self.drop_draft)),
+        ]  # fmt: skip
+
+    def take_back(self) -> None:
+        """The values that an earlier session left."""
+        left, self._kept = self._kept, None
+        assert left is not None
+        self._begin(self.file.changed(left.changes), dict(left.changes))
+        start = straight(self.numbers)
+        self._make_controls({k: left.values.get(k, value) for k, value in start.items()})
+        self.parts.say("Back to the values of the earlier session.")
+        self.live.draw()
+
+    def drop_draft(self) -> None:
+        """Forgets them."""
+        self._kept = None
+        self._offer.children = []
+        if self.file.path is not None:
+            drop(self.file.path)
 
 
-def _paragraph(text: str) -> str:
-    return f"<div style='line-height:1.4'>{text}</div>"
+def _values(finding: Finding, pivot: str) -> dict[str, Any]:
+    """The controls' values for the log of a finding."""
+    log = finding.log or {}
+    offsets = (log[f"{name}_m"] for name in ("a_y", "a_z", "b_y", "b_z"))
+    return values_of(Log(log["distance_m"], *offsets), log["state"], pivot)
 
 
-def _small(text: str) -> str:
-    return f"<div style='line-height:1.35;font-size:85%;opacity:0.8'>{html.escape(text)}</div>"
+def _told(changes: dict[str, str]) -> str:
+    return "; ".join(f"{key} = {text}" for key, text in changes.items())
+
+
+def _label(label: Any) -> str:
+    shift = {"left": "0", "middle": "-50%", "right": "-100%"}[label.side]
+    return (
+        f"<span style='left:{100 * label.x:.2f}%;top:{100 * label.y:.2f}%;color:{label.color};"
+        f"transform:translate({shift},-50%)'>{html.escape(label.text)}</span>"
+    )
 
 
 def _foot(notes: tuple[str, ...]) -> str:
     noted = "".join(f"Note: {note}. " for note in notes)
     return f"{noted}{CAUTIONS} Not covered: {'; '.join(NOT_COVERED)}."
-
-
-def _table(results: list[Finding]) -> str:
-    rows = [
-        "<tr>"
-        + "".join(
-            f"<td style='text-align:{side};padding:0 1em 0 0'>{html.escape(text)}</td>"
-            for side, text in (
-                ("left", f"{f.check.title}, {f.set}"),
-                ("right", show(f.demand, f.check.dimension, f.units, 3)),
-                ("right", f"{show(f.capacity, f.check.dimension, f.units, 3)} / "
-                 f"{number(f.required_factor, Dimension.NUMBER, f.units, 3)}"),
-                ("right", f"{f.utilisation:.3f}"),
-                ("right", margin_text(f.utilisation)),
-                ("left", f"{show(f.x, Dimension.LENGTH, f.units, 3)}, {f.place}"),
-            )
-        )
-        + "</tr>"
-        for f in results
-    ]  # fmt: skip
-    names = ("this log", "demand", "limit / factor", "utilisation", "margin", "where")
-    head = "".join(f"<th style='text-align:left;padding:0 1em 0 0'>{n}</th>" for n in names)
-    return f"<table><tr>{head}</tr>{''.join(rows)}</table>"
