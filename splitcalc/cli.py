@@ -76,10 +76,22 @@ def _wrapped(text: str) -> str:
 def _open(args: argparse.Namespace) -> int:
     from splitcalc.opening import prepare, run_lab
 
-    folder = prepare(args.folder)
+    folder, done = prepare(args.folder)
     print(f"worksheets in {folder}" + ("" if args.folder else " (a copy of the invented demo)"))
-    print(_wrapped(CAUTIONS))
+    print("\n".join([*done, _wrapped(CAUTIONS)]))
     return run_lab(folder, args.server)
+
+
+def _new(args: argparse.Namespace) -> int:
+    from shlex import quote
+
+    from splitcalc.opening import MACHINE, new_machine
+
+    print("\n".join(new_machine(args.folder, args.units, args.source)))
+    print(f"Next: change {MACHINE} in it, then")
+    print(f"  splitcalc check {quote(str(args.folder / MACHINE))}")
+    print(f"  splitcalc open {quote(str(args.folder))}")
+    return 0
 
 
 def parser() -> argparse.ArgumentParser:
@@ -105,10 +117,24 @@ def parser() -> argparse.ArgumentParser:
         "open",
         help="JupyterLab with the worksheets",
         description="JupyterLab with the worksheets. Without a folder: on a copy of the invented "
-        "demo machine. What follows -- goes to the Jupyter server, such as --no-browser.",
+        "demo machine. Worksheets that are missing are copied; those of an older version are "
+        "replaced unless they were edited. The folder icon at the left lists all files. What "
+        "follows -- goes to the Jupyter server, such as --no-browser.",
     )
     open_.add_argument("folder", type=Path, nargs="?", help="folder with your machine.toml")
     open_.set_defaults(run=_open)
+
+    new = commands.add_parser(
+        "new",
+        help="a folder with a new machine and the worksheets",
+        description="A folder with a new machine: machine.toml and the worksheets. It starts as an "
+        "invented demo, or as a copy of your own file, comments and all. A folder that has a "
+        "machine.toml is refused.",
+    )
+    new.add_argument("folder", type=Path, help="folder to make or to fill")
+    new.add_argument("--units", choices=("us", "si"), help="its units; us unless FILE says")
+    new.add_argument("--from", dest="source", type=Path, metavar="FILE", help="file to start from")
+    new.set_defaults(run=_new)
     return out
 
 
@@ -125,7 +151,16 @@ def main(argv: list[str] | None = None) -> int:
         sys.stdout = open(os.devnull, "w")  # noqa: SIM115 - for the flush at exit
     except OSError as error:
         print(f"splitcalc: {error.filename or args.command}: {error.strerror}", file=sys.stderr)
+    except _save_error() as error:
+        print(f"splitcalc: {error}", file=sys.stderr)
     return 2
+
+
+def _save_error() -> type[Exception]:
+    """Imported only once something has gone wrong: `check` saves nothing."""
+    from splitcalc.machine.save import SaveError
+
+    return SaveError
 
 
 def _split(words: list[str]) -> tuple[list[str], list[str]]:

@@ -3,6 +3,7 @@
 import json
 import subprocess
 import sys
+import tempfile
 from pathlib import Path
 
 import pytest
@@ -108,16 +109,19 @@ def test_a_folder_for_a_file_is_told(capsys, tmp_path):
     assert "directory" in err
 
 
-def test_version_and_help_need_no_machine():
+def test_version_needs_no_machine():
     done = subprocess.run(
         [sys.executable, "-m", "splitcalc.cli", "--version"], capture_output=True, text=True
     )
     assert done.stdout == f"splitcalc {__version__}\n"
-    done = subprocess.run(
-        [sys.executable, "-m", "splitcalc.cli", "check", "--help"], capture_output=True, text=True
-    )
-    assert done.returncode == 0
-    assert len(done.stdout.splitlines()) < 24
+
+
+@pytest.mark.parametrize("words", [(), ("check",), ("open",), ("new",)])
+def test_help_fits_a_screen(capsys, words):
+    with pytest.raises(SystemExit) as end:
+        cli.main([*words, "--help"])
+    assert end.value.code == 0
+    assert len(capsys.readouterr().out.splitlines()) < 24
 
 
 def test_import_stays_light():
@@ -131,7 +135,7 @@ def test_import_stays_light():
 
 
 def test_open_works_on_copies_and_overwrites_nothing(tmp_path):
-    folder = opening.prepare(tmp_path / "new")
+    folder, _ = opening.prepare(tmp_path / "new")
     names = {path.name for path in folder.iterdir()}
     assert names == {path.name for path in opening.worksheets_dir().glob("*.*")}
     mine = folder / "machine.toml"
@@ -148,8 +152,10 @@ def test_a_folder_with_a_machine_gets_no_demo_machines(tmp_path):
     assert not (tmp_path / "machine-si.toml").exists()
 
 
-def test_open_without_a_folder_is_a_fresh_copy(monkeypatch):
-    folder = opening.prepare(None)
+def test_open_without_a_folder_is_a_fresh_copy(monkeypatch, tmp_path):
+    monkeypatch.setattr(tempfile, "tempdir", str(tmp_path))
+    folder, _ = opening.prepare(None)
+    assert folder.parent == tmp_path
     assert folder != opening.worksheets_dir()
     assert (folder / "machine.toml").read_bytes() == US.read_bytes()
 
