@@ -11,11 +11,11 @@ What can't be used is refused with a `ValueError` that names all problems.
 from typing import TYPE_CHECKING, Any
 
 __version__ = "0.1.0"
-__all__ = ["load", "log", "log_between", "quantities", "under", "worst"]
+__all__ = ["load", "log", "log_between", "under", "worst"]
 
 if TYPE_CHECKING:
     from splitcalc.machine.file import load
-    from splitcalc.scripting import log, log_between, quantities, under, worst
+    from splitcalc.scripting import log, log_between, under, worst
 else:
     # On first use: `import splitcalc` stays light, numpy included.
     def __getattr__(name: str) -> Any:

@@ -17,7 +17,7 @@ import numpy as np
 
 from splitcalc.equations import Line
 from splitcalc.equations.render import lines_of_text
-from splitcalc.units import MINUS, Dimension, number, show
+from splitcalc.units import MINUS, Dimension, number, quantity, show
 
 Array = Any
 
@@ -101,6 +101,16 @@ class Finding:
             return True
         u = self.utilisation
         return self.given and u is not None and u <= 1
+
+    @property
+    def quantities(self) -> dict[str, Any]:
+        """Demand, capacity and place x as pint quantities in the person's units."""
+        kinds = {"demand": self.check.dimension, "capacity": self.check.dimension}
+        return {
+            name: quantity(si, kind, self.units)
+            for name, kind in (kinds | {"x": Dimension.LENGTH}).items()
+            if (si := getattr(self, name)) is not None
+        }
 
     def as_dict(self) -> dict[str, Any]:
         """The finding as plain data, SI numbers: the shape of `check --json`."""

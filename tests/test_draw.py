@@ -13,7 +13,7 @@ from PIL import Image
 
 from splitcalc.checks import ALL
 from splitcalc.draw import palette
-from splitcalc.draw.action_panel import ActionPanel, diagrams
+from splitcalc.draw.action_panel import ActionPanel
 from splitcalc.draw.labels import HEIGHT, WIDTH, Room, apart, label, overlaps
 from splitcalc.draw.main_beam import MainBeamPicture, still
 from splitcalc.draw.png import read_inputs
@@ -25,7 +25,7 @@ from splitcalc.logs.present import FIXED, MOVING, Present, corner_points, log_th
 from splitcalc.logs.report import findings
 from splitcalc.machine.file import Machine, load, parse_machine
 from splitcalc.opening import worksheets_dir
-from splitcalc.stress.bimoment import bounds
+from splitcalc.stress.bimoment import bounds, internal_actions
 from splitcalc.units import Dimension, factor
 
 DEMOS = ("machine.toml", "machine-si.toml")
@@ -271,10 +271,10 @@ def test_views_are_to_scale_and_share_the_panel_s_axis(demo: Demo) -> None:
     scales = []
     for axes in (picture.views.side, picture.views.above):
         (x_1, x_2), (v_1, v_2), box = axes.get_xlim(), axes.get_ylim(), axes.get_position()
-        scales += [(x_2 - x_1) / box.width, (v_2 - v_1) / box.height]
+        scales += [(x_2 - x_1) / (box.width * WIDTH), (v_2 - v_1) / (box.height * HEIGHT)]
         np.testing.assert_allclose(picture.panel.curves.axes.get_xlim(), (x_1 * per, x_2 * per))
         assert box.x0 == picture.panel.curves.axes.get_position().x0
-    np.testing.assert_allclose(scales, scales[0])  # WIDTH equals HEIGHT
+    np.testing.assert_allclose(scales, scales[0])
 
 
 def test_shading_reaches_one_depth_past_pads_and_tool(us: Demo) -> None:
@@ -354,7 +354,8 @@ def test_the_action_panel_shows_the_actions(demo: Demo) -> None:
     picture = demo.picture(now, "actions")
     picture.render(demo.machine, now, {}, None)
     assert isinstance(picture.panel, ActionPanel)
-    found, acting, section = diagrams(now), now.acting, now.numbers.section
+    acting, section = now.acting, now.numbers.section
+    found = {n: v[:, 0] for n, v in internal_actions(now.numbers, acting).items()}
     for name in ("N", "V_y", "V_z", "M_y", "M_z"):
         np.testing.assert_array_equal(found[name], getattr(acting, name)[:, 0])
     torque = acting.torque(acting.torques(section.z_s))
@@ -383,7 +384,7 @@ def test_the_larger_bound_of_warping_is_shown(us: Demo) -> None:
     now = us.now(machine, pivot=FIXED, tan_left=0.15)
     free, held = (w.B[:, 0] for w in bounds(now.numbers, now.acting))
     assert np.abs(free - held).max() > 0.1 * np.abs(free).max()
-    shown = diagrams(now)["B"]
+    shown = internal_actions(now.numbers, now.acting)["B"][:, 0]
     np.testing.assert_array_equal(np.abs(shown), np.maximum(np.abs(free), np.abs(held)))
 
 

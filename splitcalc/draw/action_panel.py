@@ -18,7 +18,7 @@ from splitcalc.findings import Finding
 from splitcalc.logs.present import Present
 from splitcalc.logs.report import acting_on
 from splitcalc.machine.numbers import Numbers
-from splitcalc.stress.bimoment import bounds
+from splitcalc.stress.bimoment import internal_actions
 from splitcalc.thrust.frame import Log
 from splitcalc.thrust.statics import Actions
 from splitcalc.units import Dimension, factor, unit_text
@@ -57,26 +57,6 @@ DIAGRAMS = (
     Diagram("torque", Dimension.MOMENT, {"T": palette.WHOLE, "T_w": palette.SHARE}),
     Diagram("bimoment as top-flange moment", Dimension.MOMENT, {B_FLANGE: palette.WHOLE}),
 )
-
-
-def diagrams(now: Present) -> dict[str, np.ndarray]:
-    """Internal actions at the stations of `now.x`. [N, N·m, N·m²]
-
-    N, V_y, V_z, M_y, M_z; T about the shear centre; for an open section also T_w, the share of T
-    that warping carries, and the bimoment B. With two bounds of warping each has the larger.
-    """
-    return _diagrams(now.numbers, now.acting)
-
-
-def _diagrams(numbers: Numbers, acting: Actions) -> dict[str, np.ndarray]:
-    out = {name: getattr(acting, name) for name in ("N", "V_y", "V_z", "M_y", "M_z")}
-    out["T"] = acting.torque(acting.torques(numbers.section.z_s))
-    if numbers.section.open:
-        first, *others = bounds(numbers, acting)
-        out["T_w"], out["B"] = first.T_w, first.B
-        for name, values in ((n, getattr(o, n)) for o in others for n in ("T_w", "B")):
-            out[name] = np.where(np.abs(values) > np.abs(out[name]), values, out[name])
-    return {name: np.broadcast_to(value, acting.x.shape)[:, 0] for name, value in out.items()}
 
 
 class ActionPanel:
@@ -122,7 +102,7 @@ class ActionPanel:
             put(curves.axes, own)
 
     def _values(self, numbers: Numbers, acting: Actions) -> list[dict[str, np.ndarray]]:
-        found = _diagrams(numbers, acting)
+        found = {n: v[:, 0] for n, v in internal_actions(numbers, acting).items()}
         if "B" in found:
             found[B_FLANGE] = found["B"] / numbers.section.h_o
         return [

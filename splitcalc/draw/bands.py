@@ -16,7 +16,9 @@ from typing import NamedTuple
 from matplotlib.axes import Axes
 
 from splitcalc.draw.labels import HEIGHT, WIDTH, Room
+from splitcalc.logs.limits import sideways_reach
 from splitcalc.machine.document import Document
+from splitcalc.machine.numbers import Numbers
 from splitcalc.shapes.section import Section
 
 LEFT, RIGHT, TOP, BOTTOM, GAP = 69, 10, 18, 42, 8  # css px
@@ -63,12 +65,13 @@ def cylinder_top(doc: Document, section: Section) -> float:
     return float(section.z_t) + doc.cylinder.axis_height.si + 0.6 * doc.cylinder.bore.si
 
 
-def bands_of(doc: Document, section: Section) -> Bands:
+def bands_of(doc: Document, numbers: Numbers) -> Bands:
     """The division for a machine, its scale set by the beam's length, or by its height.
 
-    The drawn log is no input of any check: its diameter is the middle of smallest and largest, but
-    no more than suits the views.
+    All contacts of allowed logs are in sight. The drawn log is no input of any check: its diameter
+    is the middle of smallest and largest, but no more than suits the views.
     """
+    section = numbers.section
     rear, front = doc.beam.rear_end.si, doc.beam.front_end.si
     tools = (doc.moving_tool, doc.fixed_tool)
     top = max(
@@ -76,7 +79,8 @@ def bands_of(doc: Document, section: Section) -> Bands:
         *(section.z_t + tool.bottom.si + tool.height.si for tool in tools),
     )
     across = WIDTH - LEFT - RIGHT
-    wide = max(2 * section.y_t, 2 * section.y_b, doc.cylinder.bore.si, *(t.width.si for t in tools))
+    widths = (2 * section.y_t, 2 * section.y_b, doc.cylinder.bore.si, *(t.width.si for t in tools))
+    wide = max(*widths, 2 * sideways_reach(numbers))
     pixel = max(
         (front - rear) / (across - 2 * EDGE),
         (top - section.z_b) / (SIDE[1] - 2 * EDGE),

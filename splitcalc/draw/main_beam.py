@@ -82,7 +82,7 @@ class MainBeamPicture:
 
     def _place(self, machine: Machine, now: Present) -> None:
         section = now.numbers.section
-        self._bands = bands_of(machine.document, section)
+        self._bands = bands_of(machine.document, now.numbers)
         self.views.place(self._bands, machine.document, section)
         self.panel.place(self._bands)
         for axes in self.panel.axes:

@@ -56,9 +56,10 @@ class StressPanel:
         texts = zip(numbers.required["yield"], self._limits, strict=True)
         for way, (name, limit) in zip(ways, sorted(texts, key=lambda t: -t[1]), strict=True):
             value = number(limit, Dimension.STRESS, units, 3)
-            axes.text(
-                0.006, limit * self._mpa, f"limit, {name} logs: {value}", color=palette.LIMIT,
-                va=way, fontsize=FONT - 0.5, transform=axes.get_yaxis_transform(), zorder=2,
+            axes.annotate(
+                f"limit, {name} logs: {value}", (0.006, limit * self._mpa), color=palette.LIMIT,
+                xycoords=axes.get_yaxis_transform(), xytext=(0, 2 if way == "bottom" else -3),
+                textcoords="offset points", va=way, fontsize=FONT - 0.5, zorder=2,
             )  # fmt: skip
         self.near = [
             Rectangle((0, -1e6), 0, 2e6, facecolor=palette.NEAR_LOAD, alpha=0.07, linewidth=0)

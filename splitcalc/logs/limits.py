@@ -77,6 +77,18 @@ def sled_reach(numbers: Numbers) -> tuple[float, float]:
     return max(float(nearest), 1e-6), float(farthest)
 
 
+def sideways_reach(numbers: Numbers) -> float:
+    """How far off centre any allowed log touches a tool. [m]
+
+    Beside a buried edge only the grip limits it: a contact can't be farther from the other one
+    than the slope allows.
+    """
+    distance = np.linspace(numbers.gap, numbers.longest, 33)
+    a, b = allowed(numbers, SHARE[SETS[-1]], True, distance).ends[[0, 2], 1]
+    near, far = np.minimum(a, b), np.maximum(a, b)
+    return float(np.minimum(far, near + numbers.grip * distance).max())
+
+
 def bounds_met(numbers: Numbers, set_name: str, state: str, log: Log) -> str:
     """Which limits of its set a log sits on, in words."""
     near = 1e-6 * distances(numbers, state)[1]

@@ -44,20 +44,17 @@ def shortfall(utilisation: float) -> str:
 
 
 def this_log(now: Present, units: Any) -> str:
-    """What governs under one log, and which limits it is past."""
+    """What governs under one log."""
     worst = governing(now.findings)
     if worst is None:
         return "nothing was checked."
     if worst.utilisation is None or worst.log is None or worst.x is None:
         return f"{worst.check.title} can't be given: {worst.why}."
     where = show(worst.x, Dimension.LENGTH, units, 3)
-    told = (
+    return (
         f"({log_words(worst.log, units)}) {worst.check.title} governs and "
         f"{shortfall(worst.utilisation)} of {worst.set} logs, at x = {where}."
     )
-    if now.past:
-        told += f" Not an allowed log: {'; '.join(now.past)}. It is judged as an extreme one."
-    return told
 
 
 def sentence(results: Sequence[Finding]) -> str:

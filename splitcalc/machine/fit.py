@@ -196,10 +196,12 @@ def _sled(doc: Document) -> Found:
             "front pad's",
         )
     edge, opening = doc.fixed_tool.edge_x.si, doc.logs.smallest_gap.si + doc.cylinder.stroke.si
-    if edge - opening - rear - length / 2 < doc.beam.rear_end.si:
+    over = doc.beam.rear_end.si - (edge - opening - rear - length / 2)
+    if over > 1e-9:
         yield (
             f"sled.{wanted[1]}",
-            "drawn in, the rear pad hangs over the beam's rear end",
+            f'"{getattr(sled, wanted[1]).text}" is too much: drawn in, the rear pad hangs '
+            f"{over * 1e3:.0f} mm over the beam's rear end \"{doc.beam.rear_end.text}\"",
         )
     ahead = edge - doc.logs.smallest_gap.si - front + length / 2
     if ahead > doc.fixed_tool.weld_start.si + 1e-9:

@@ -12,10 +12,10 @@ from splitcalc.logs.report import findings
 from splitcalc.machine.file import Machine
 from splitcalc.scripting.arguments import Arguments, log, log_between
 from splitcalc.scripting.curves import Curves
-from splitcalc.scripting.results import Findings, Result, quantities
+from splitcalc.scripting.results import Findings, Result
 from splitcalc.thrust.frame import Log
 
-__all__ = ["Curves", "Findings", "Result", "log", "log_between", "quantities", "under", "worst"]
+__all__ = ["Curves", "Findings", "Result", "log", "log_between", "under", "worst"]
 
 
 def under(machine: Machine, log: Log, state: str = FIRST_BITE) -> Result:

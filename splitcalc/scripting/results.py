@@ -18,23 +18,10 @@ from splitcalc.logs.limits import OUTSIDE
 from splitcalc.logs.present import Present
 from splitcalc.logs.report import governing
 from splitcalc.scripting.curves import Array, Curves, Quantity, table
-from splitcalc.stress.bimoment import bounds
+from splitcalc.stress.bimoment import internal_actions
 from splitcalc.thrust.frame import Log
 from splitcalc.thrust.statics import Reactions
 from splitcalc.units import Dimension, number, quantity, show
-
-HELD = "_held"  # the second bound of the bimoment
-
-
-def quantities(finding: Finding) -> dict[str, Quantity]:
-    """Demand, capacity and place x of a finding in the person's units; empty without numbers."""
-    kinds = {"demand": finding.check.dimension, "capacity": finding.check.dimension}
-    kinds["x"] = Dimension.LENGTH
-    return {
-        name: quantity(si, kind, finding.units)
-        for name, kind in kinds.items()
-        if (si := getattr(finding, name)) is not None
-    }
 
 
 class Findings(Sequence[Finding]):
@@ -148,20 +135,14 @@ class Result:
         """Internal actions: what the part with larger x exerts on the part with smaller x.
 
         `N`, `V_y`, `V_z`, `M_y`, `M_z` about the centroid, torque `T` about the shear centre; of
-        an open section the bimoment `B`. With stretches closed by side plates `B` is that of free
-        warping, and `B_held` that of warping held at their faces.
+        an open section also `T_w`, the share of it that warping carries, and the bimoment `B`.
         """
-        acting, section = self.present.acting, self.present.numbers.section
-        curves = {name: getattr(acting, name) for name in ("N", "V_y", "V_z", "M_y", "M_z")}
-        curves["T"] = acting.torque(acting.torques(section.z_s))
-        if section.open:
-            both = bounds(self.present.numbers, acting)
-            curves |= {f"B{end}": bound.B for end, bound in zip(("", HELD), both, strict=False)}
+        now = self.present
         return self._curves(
             "internal actions",
             {
-                name: (values[:, 0], SYMBOLS[name.removesuffix(HELD)].dimension)
-                for name, values in curves.items()
+                name: (values[:, 0], SYMBOLS[name].dimension)
+                for name, values in internal_actions(now.numbers, now.acting).items()
             },
         )
 

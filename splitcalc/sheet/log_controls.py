@@ -10,7 +10,7 @@ from ipywidgets import Button, VBox
 
 from splitcalc.inputs import Entry, Fact
 from splitcalc.logs.allowed import FIRST_BITE, STATES
-from splitcalc.logs.limits import sled_reach
+from splitcalc.logs.limits import sideways_reach, sled_reach
 from splitcalc.logs.present import FIXED, MOVING, log_through
 from splitcalc.machine.numbers import Numbers
 from splitcalc.sheet.controls import Number, buttons_of
@@ -70,7 +70,7 @@ class LogControls:
     def __init__(self, numbers: Numbers, units: Any, values: Values) -> None:
         self._units = units
         steep = math.atan(PAST * numbers.grip)
-        side = PAST * max(numbers.moving.half_width, numbers.fixed.half_width)
+        side = PAST * sideways_reach(numbers)
         low = PAST * min(numbers.moving.low, numbers.fixed.low, 0.0)
         high = PAST * max(numbers.moving.high, numbers.fixed.high, 0.0)
         angle, length = Dimension.ANGLE, Dimension.LENGTH

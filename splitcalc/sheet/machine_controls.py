@@ -37,7 +37,7 @@ class MachineControls:
         sections = {name: name for name in all_sections()}
         for machine in (file, now):
             if machine.section_name not in sections:
-                sections = {f"{machine.section_name}, as in the file": "", **sections}
+                sections = {f"{machine.section_name} (file)": "", **sections}
         chosen = now.section_name if now.section_name in all_sections() else ""
         steel = now.document.beam.steel
         self.controls: dict[str, Any] = {

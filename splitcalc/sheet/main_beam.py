@@ -66,7 +66,11 @@ class MainBeam:
             self._button(f"worst {name} log", f"{name} logs, of the chosen check", self.go, name)
             for name in SETS
         ]
-        self.parts = Page(pin=self._pin, worst=go, foot=_foot(self.numbers.notes))
+        self.parts = Page(
+            pin=self._pin, worst=go,
+            open_points=still_open(NOT_YET),
+            foot=_foot(self.numbers.notes),
+        )
         self.page = self.parts.box
         self._make_names()
         self._make_controls(straight(self.numbers))
@@ -269,8 +273,11 @@ class MainBeam:
         all_logs = "being searched …" if self._search else sentence(self.worst)
         parts.sentence.value = (
             f"<div><b>This log</b> {html.escape(this_log(now, self.units))} "
-            f"<b>All allowed logs</b>: {html.escape(all_logs)}</div>{small(still_open(NOT_YET))}"
+            f"<b>All allowed logs</b>: {html.escape(all_logs)} <b>Not yet checked</b>: "
+            f"{len(NOT_YET)} kinds of failure, listed under the bars.</div>"
         )
+        past = f"Not an allowed log: {'; '.join(now.past)}. It is judged as an extreme one."
+        parts.past.value = f"<div>{html.escape(past)}</div>" if now.past else ""
         parts.unsaved(_told(self._changes))
         parts.show_view(view)
 

@@ -16,13 +16,14 @@ VIEWS = ("stress", "actions", "equations")
 class Page:
     """Rail of controls, sentence, picture with its moving texts, equations, section, bars."""
 
-    def __init__(self, *, pin: Button, worst: list[Button], foot: str) -> None:
+    def __init__(self, *, pin: Button, worst: list[Button], open_points: str, foot: str) -> None:
         size = Layout(width=f"{WIDTH}px", height=f"{HEIGHT}px")
         self.image = Image(format="png", width=WIDTH, height=HEIGHT, layout=size)
         self.labels = named(HTML(), "labels")
         self.stage = named(Box([self.image, self.labels]), "stage")
         self.equations = named(HTML(), "equations")
         self.view = named(ToggleButtons(options=VIEWS, tooltips=VIEW_WORDS), "choice")
+        self.past = named(HTML(), "past")
         self.sentence = named(HTML(), "sentence")
         self.section, self.bars = HTML(), HTML()
         self.names = named(VBox(), "names")
@@ -32,14 +33,15 @@ class Page:
         checks = named(Box([self.names, self.bars]), "checks")
         side = [
             heading("section, where it governs"), self.section,
-            heading("used of the limit"), checks, row(*worst, pin),
+            heading("used of the limit"), checks, row(*worst), row(pin), HTML(small(open_points)),
         ]  # fmt: skip
+        view = named(Box([self.view, self.past]), "view")
         body = named(
             Box(
                 [
                     self.rail,
                     self.sentence,
-                    named(VBox([self.view, self.stage, self.equations]), "middle"),
+                    named(VBox([view, self.stage, self.equations]), "middle"),
                     named(VBox(side), "side"),
                 ]
             ),

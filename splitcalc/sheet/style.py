@@ -5,6 +5,8 @@ bars go under the picture, in a very narrow one all stand below each other. Leng
 pictures depend on come from them.
 """
 
+from splitcalc.draw.labels import HEIGHT, WIDTH
+
 STALE = "splitcalc-stale"  # on the page while its picture does not show what the controls say
 
 WAITING = "splitcalc-waiting"  # while the worst logs of a changed machine are searched
@@ -29,16 +31,18 @@ STYLE = f"""<style>
 .splitcalc-body {{
   display: grid; gap: 4px 14px; align-items: start;
   grid-template: "rail sentence sentence" auto "rail stage side" auto "rail . ." 1fr
-                 / 230px 600px minmax(242px, 320px);
+                 / 230px {WIDTH}px minmax(242px, 320px);
 }}
 @container (max-width: 1096px) {{ .splitcalc-body {{
-  grid-template: "sentence sentence" auto "rail stage" auto "rail side" auto / 220px 600px;
+  grid-template: "sentence sentence" auto "rail stage" auto "rail side" auto / 220px {WIDTH}px;
 }} }}
 @container (max-width: 831px) {{ .splitcalc-body {{
-  grid-template: "sentence" auto "rail" auto "stage" auto "side" auto / minmax(0, 600px);
+  grid-template: "sentence" auto "rail" auto "stage" auto "side" auto / minmax(0, {WIDTH}px);
 }} }}
 .splitcalc-rail {{ grid-area: rail; }}
-.splitcalc-sentence {{ grid-area: sentence; min-height: 74px; font-size: 14px; }}
+.splitcalc-page .splitcalc-sentence {{
+  grid-area: sentence; height: 72px; overflow: auto !important; /* four lines: nothing jumps */
+}}
 .splitcalc-middle {{ grid-area: stage; }}
 .splitcalc-side {{ grid-area: side; }}
 
@@ -72,17 +76,24 @@ STYLE = f"""<style>
 .splitcalc-page .jupyter-button {{ font-size: 12px; height: 26px; line-height: 26px; }}
 .splitcalc-buttons {{ display: flex; flex-flow: row wrap; gap: 4px; }}
 .splitcalc-buttons .jupyter-button {{ width: auto; flex: 1 1 auto; margin: 0; }}
+.splitcalc-side .splitcalc-buttons {{ margin: 4px 0; }}
+.splitcalc-side .jupyter-button {{ padding: 0 5px; }}
+.splitcalc-view {{ display: flex; height: 34px; overflow: hidden; }}
+.splitcalc-view .splitcalc-choice {{ width: auto; flex: none; }}
+.splitcalc-past {{ font-size: 12px; margin-left: 12px !important; }}
 .splitcalc-message {{ white-space: normal; font-size: 12px; }}
 
-.splitcalc-stage {{ position: relative; width: 600px; height: 600px; }}
+.splitcalc-stage {{ position: relative; width: {WIDTH}px; height: {HEIGHT}px; }}
 .splitcalc-stage img {{ position: absolute; inset: 0; max-width: none; margin: 0; }}
 .splitcalc-labels {{ position: absolute; inset: 0; pointer-events: none; }}
 .splitcalc-labels span {{
   position: absolute; white-space: nowrap; font: 12px/13px sans-serif;
   text-shadow: 0 0 2px #fff, 0 0 2px #fff, 0 0 3px #fff;
 }}
-.splitcalc-equations {{ width: 600px; height: 600px; overflow: auto !important; }}
-.{STALE} .splitcalc-stage img, .{STALE} .splitcalc-drawn {{ opacity: 0.25; filter: grayscale(1); }}
+.splitcalc-equations {{ width: {WIDTH}px; height: {HEIGHT}px; overflow: auto !important; }}
+.{STALE} .splitcalc-stage img, .{STALE} .splitcalc-labels, .{STALE} .splitcalc-drawn {{
+  opacity: 0.25; filter: grayscale(1);
+}}
 .{WAITING} .sc-worst {{ opacity: 0.35; }}
 
 .splitcalc-checks {{ position: relative; display: grid; grid-template-columns: 96px 1fr; }}

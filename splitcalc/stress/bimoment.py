@@ -90,6 +90,24 @@ def bounds(numbers: Numbers, actions: Actions) -> list[Warping]:
     return out
 
 
+def internal_actions(numbers: Numbers, actions: Actions) -> dict[str, Array]:
+    """N, V_y, V_z, M_y, M_z and the torque T about the shear centre, at the stations. [N, N·m]
+
+    For an open section also T_w, the share of T that warping carries, and the bimoment B
+    [N·m²]; of two bounds the larger at each station.
+    """
+    out = {name: getattr(actions, name) for name in ("N", "V_y", "V_z", "M_y", "M_z")}
+    out["T"] = actions.torque(actions.torques(numbers.section.z_s))
+    if numbers.section.open:
+        first, *others = bounds(numbers, actions)
+        for name in Warping._fields:
+            out[name] = getattr(first, name)
+            for bound in others:
+                other = getattr(bound, name)
+                out[name] = np.where(abs(other) > abs(out[name]), other, out[name])
+    return {name: np.broadcast_to(value, actions.x.shape) for name, value in out.items()}
+
+
 def _along(
     actions: Actions, spans: tuple[Span, ...], k: Array, loads: dict[str, Array], b_t: Array
 ) -> Warping:
