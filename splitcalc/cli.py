@@ -140,7 +140,7 @@ def parser() -> argparse.ArgumentParser:
 
 def main(argv: list[str] | None = None) -> int:
     words = sys.argv[1:] if argv is None else argv
-    words, server = _split(words)
+    words, server = _split(words) if words[:1] == ["open"] else (words, [])
     args = parser().parse_args(words)
     args.server = server
     try:

@@ -151,6 +151,18 @@ class Finding:
             f"margin {margin_text(self.utilisation)}"
         )
 
+    def answer(self) -> str:
+        """Demand against what is required of it, in one line."""
+        if self.utilisation is None:
+            return ""
+        kind = self.check.dimension
+        demand, capacity = (show(v, kind, self.units) for v in (self.demand, self.capacity))
+        factor = number(self.required_factor, Dimension.NUMBER, self.units)
+        return (
+            f"largest: {demand}; used: {factor}·({demand})/({capacity}) = {self.utilisation:.4g}, "
+            f"margin 1/{self.utilisation:.4g} − 1 = {margin_text(self.utilisation)}"
+        )
+
     def text(self) -> str:
         """Verdict, equations (symbols, numbers with units, result), source, assumptions."""
         out = textwrap.wrap(self.verdict(), WIDTH)
@@ -162,7 +174,7 @@ class Finding:
                 body = body[1:]
             place = line.place
             out += ["", *body, f"    source: {source}"]
-        out += ["", f"check's source: {self.check.source}"]
+        out += ["", self.answer(), "", f"check's source: {self.check.source}"]
         out += [f"assumption: {text}" for text in self.check.assumptions]
         return "\n".join(out)
 
@@ -191,6 +203,7 @@ class Finding:
                 f"<b>{html.escape(last)}</b> <small style='opacity:0.7;font-family:sans-serif'>"
                 f"{html.escape(line.equation.source)}</small></div>"
             )
+        out.append(f"<p><b>{html.escape(self.answer())}</b></p>")
         notes = [f"check's source: {self.check.source}", *self.check.assumptions]
         out += [f"<p style='margin:6px 0;font-size:85%'>{html.escape(note)}</p>" for note in notes]
         return "".join(out)
@@ -210,8 +223,21 @@ def margin_text(utilisation: float | None) -> str:
 
 def demand_over_capacity(check: Check, numbers: Any, actions: Any) -> Array:
     """Utilisation at required factor 1, at every sample and place."""
-    demand, capacity = check.evaluate(numbers, actions)
+    demand, capacity = evaluated(check, numbers, actions)
     return demand / capacity
+
+
+def evaluated(check: Check, numbers: Any, actions: Any) -> tuple[Array, Array]:
+    """Demand and capacity of one shape, `samples + (stations, points)`.
+
+    Raises
+    ------
+    ValueError : when the check gives something else
+    """
+    demand, capacity = np.broadcast_arrays(*check.evaluate(numbers, actions))
+    if demand.ndim < 2:
+        raise ValueError(f"its arrays must be (stations, points), not of shape {demand.shape}")
+    return demand, capacity
 
 
 def worst_place(values: np.ndarray) -> tuple[np.ndarray, np.ndarray]:

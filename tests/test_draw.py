@@ -1,6 +1,7 @@
 """The picture of the main beam: what moves stands where the mechanics say, texts stay readable."""
 
 import io
+import itertools
 import re
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -14,7 +15,7 @@ from PIL import Image
 from splitcalc.checks import ALL
 from splitcalc.draw import palette
 from splitcalc.draw.action_panel import ActionPanel
-from splitcalc.draw.labels import HEIGHT, WIDTH, Room, apart, label, overlaps
+from splitcalc.draw.labels import HEIGHT, LINE, WIDTH, Label, Room, apart, label, overlaps
 from splitcalc.draw.main_beam import MainBeamPicture, still
 from splitcalc.draw.png import read_inputs
 from splitcalc.draw.section import section_svg
@@ -125,31 +126,30 @@ def test_every_curve_of_the_stress_panel_has_its_name_in_its_colour_inside_the_a
     assert "governs here" not in shown
 
 
-def test_names_lie_off_the_curves_in_their_order(us: Demo) -> None:
-    now = us.now(pivot=FIXED, tan_left=0.2, tan_up=0.1)
-    picture = us.picture(now)
-    picture.render(us.machine, now, {}, None)
+@pytest.mark.parametrize("tan_left", [0.0, 0.05, 0.2, -0.3])
+def test_names_stand_at_their_curves_in_their_order(demo: Demo, tan_left: float) -> None:
+    now = demo.now(pivot=FIXED, tan_left=tan_left, tan_up=0.1)
+    picture = demo.picture(now)
+    picture.render(demo.machine, now, {}, None)
     assert isinstance(picture.panel, StressPanel)
     curves = picture.panel.curves
     names = [one for one in picture.labels() if one.text in curves.lines]
+    assert len(names) == len(curves.lines)
     box, (low, high), top = curves.axes.get_position(), curves.axes.get_xlim(), curves.shown
-    for one in names:
-        left, upper, right, lower = one.box
-        x = low + (high - low) * (np.linspace(left, right, 30) / WIDTH - box.x0) / box.width
-        for line in curves.lines.values():
-            share = (np.interp(x, line.get_xdata(), line.get_ydata()) + top) / (2 * top)
-            y = HEIGHT * (1 - box.y0 - share * box.height)
-            assert not np.any((y > upper) & (y < lower)), one
-    middle = 1e-3 + (now.acting.frame.x_A + now.acting.frame.x_B) / 2 * factor(
-        Dimension.LENGTH, "us"
-    )
-    heights = {
-        name: np.interp(middle, line.get_xdata(), line.get_ydata())
-        for name, line in curves.lines.items()
-    }
-    assert [one.text for one in sorted(names, key=lambda one: one.y)] == sorted(
-        heights, key=lambda name: -heights[name]
-    )
+
+    def height(one: Label) -> float:
+        x = low + (high - low) * (one.x - box.x0) / box.width
+        line = curves.lines[one.text]
+        share = (np.interp(x, line.get_xdata(), line.get_ydata()) + top) / (2 * top)
+        return float(1 - box.y0 - share * box.height) * HEIGHT
+
+    ordered = sorted(names, key=lambda one: one.y)
+    heights = [height(one) for one in ordered]
+    assert all(a <= b + 0.5 for a, b in itertools.pairwise(heights))
+    for one, y in zip(ordered, heights, strict=True):
+        # as many lines away as there are names in its way, at most
+        near = sum(abs(y - other) < len(names) * LINE for other in heights)
+        assert abs(one.y * HEIGHT - y) <= near * LINE / 2 + 1
 
 
 def test_labels_move_by_the_least_that_clears_and_go_when_there_is_no_room() -> None:

@@ -1,5 +1,6 @@
 """The main-beam page without a browser: what its controls and buttons do."""
 
+import asyncio
 import html
 import math
 import re
@@ -7,6 +8,7 @@ import shutil
 from dataclasses import fields
 from pathlib import Path
 
+import numpy as np
 import pytest
 from ipywidgets import HTML
 
@@ -15,6 +17,7 @@ from splitcalc.draw.labels import HEIGHT, WIDTH
 from splitcalc.draw.png import read_inputs
 from splitcalc.equations import equation
 from splitcalc.findings import Check
+from splitcalc.logs.limits import sled_reach
 from splitcalc.logs.present import present
 from splitcalc.logs.report import findings, governing
 from splitcalc.machine import draft
@@ -23,9 +26,9 @@ from splitcalc.opening import worksheets_dir
 from splitcalc.shapes.tables import all_sections
 from splitcalc.sheet.bars import bars, by_check_and_set
 from splitcalc.sheet.log_controls import NUMBERS, log_of, straight, values_of
-from splitcalc.sheet.main_beam import MainBeam
+from splitcalc.sheet.main_beam import SETTLE, MainBeam
 from splitcalc.sheet.style import STALE, WAITING
-from splitcalc.units import Dimension
+from splitcalc.units import Dimension, show
 
 DEMOS = ["machine.toml", "machine-si.toml"]
 MACHINE = ("cylinder.relief_pressure", "cylinder.axis_height", "pad spacing")
@@ -187,15 +190,14 @@ def test_a_log_past_its_limits_is_said_and_still_computed(beam):
 
 
 def test_a_sled_off_the_beam_is_an_error_over_a_greyed_picture(beam):
-    fact = beam.controls["distance"].fact
+    reach = sled_reach(beam.numbers)[1]
+    beam.controls["distance"]._field.value = f"{reach:.6f} m"
+    agrees(beam)
     beam.controls["distance"]._field.value = "4 m"
-    assert "4 m" in beam.controls["distance"]._error.value  # what may be typed ends there
-    assert beam.controls["distance"].value.si < fact.high
-    move(beam, "pad spacing", 1)
-    beam.controls["pad spacing"]._field.value = "1.5 m"
     assert stale(beam)
-    assert "rear pad" in beam.parts.sentence.value
-    press(beam, "back to file")
+    assert "the rear pad hangs over" in beam.parts.sentence.value
+    assert show(reach, Dimension.LENGTH, beam.units) in beam.parts.sentence.value
+    beam.controls["distance"]._field.value = "400 mm"
     agrees(beam)
 
 
@@ -381,6 +383,8 @@ def test_what_was_not_saved_is_offered_after_a_restart(beam, file):
     values, changes = log_values(beam), beam._machine.changes()
     again = MainBeam(load(file))
     assert log_values(again) == straight(again.numbers)
+    again.show_in({"si": "us", "us": "si"}[again.units])
+    again.show_in(beam.units)
     move(again, "skew_up", 2)  # not answered yet: what was kept is not lost
     press(again, "take them back")
     assert log_values(again) == values
@@ -451,6 +455,11 @@ def test_a_page_does_not_wait_for_the_search(beam):
     beam.live.run_slices = lambda work: seen.append(work)
     move(beam, "cylinder.relief_pressure", 3)
     assert WAITING in beam.page._dom_classes
+    before = bytes(beam.parts.image.value)
+    move(beam, "cylinder.relief_pressure", 1)
+    assert bytes(beam.parts.image.value) != before  # the picture is there before the words
+    rest, step = next(seen[-1]), next(seen[-1])
+    assert (rest, step) == (SETTLE, None)
     assert "being searched" in beam.parts.sentence.value
     press(beam, "worst extreme log")
     assert "being searched" in said(beam)
@@ -482,4 +491,192 @@ def test_a_contact_range_that_crushes_is_said_on_the_page():
     assert narrow != text
     page = MainBeam(parse_machine(narrow.encode())).page
     assert "Note: the push plate" in page.children[-1].value
+    beam = MainBeam(parse_machine(text.encode()))
+    beam.add_slider("moving_tool.width")
+    beam.controls["moving_tool.width"]._field.value = "1 in"
+    assert "Note: the push plate" in beam.page.children[-1].value
     assert "Note:" not in MainBeam(parse_machine(text.encode())).page.children[-1].value
+
+
+# --- what was found by trying to break it ---------------------------------------------------------
+
+
+def squash(demand, **more) -> Check:
+    return Check(
+        "mine", "a check of one's own", "a rule of one's own", Dimension.STRESS,
+        lambda numbers, acting: (demand(numbers, acting), numbers.f_y), **more,
+    )  # fmt: skip
+
+
+def test_a_draft_keeps_what_added_sliders_changed(beam, file):
+    beam.add_slider("fixed_tool.edge_x")
+    move(beam, "fixed_tool.edge_x", -1)
+    changes = beam._machine.changes()
+    again = MainBeam(load(file))
+    press(again, "take them back")
+    assert again._machine.changes() == changes
+    agrees(again)
+    assert draft.kept(file).changes == changes
+
+
+def test_a_change_that_waits_survives_the_unit_switch(beam):
+    async def main() -> None:
+        beam.controls["cylinder.relief_pressure"]._field.value = "15 MPa"
+        beam.show_in({"si": "us", "us": "si"}[beam.units])
+
+    asyncio.run(main())
+    beam.live.draw()
+    assert beam._machine.changes() == {"cylinder.relief_pressure": "15 MPa"}
+    agrees(beam)
+
+
+def test_a_refused_text_keeps_its_error_and_is_not_saved_over(beam, file):
+    text = file.read_text()
+    beam.controls["cylinder.relief_pressure"]._field.value = "200 MPa"
+    move(beam, "skew_up", 2)
+    assert "200 MPa" in beam.controls["cylinder.relief_pressure"]._error.value
+    press(beam, "save")
+    assert "relief pressure can&#x27;t be read" in said(beam)
+    assert file.read_text() == text
+    beam.controls["cylinder.relief_pressure"]._field.value = "15 MPa"
+    assert beam.controls["cylinder.relief_pressure"]._error.value == ""
+    agrees(beam)
+
+
+def test_a_slider_for_a_pad_takes_the_place_of_the_spacing(beam):
+    key = "sled.guide_front" if beam.file.document.sled.guide == "continuous" else "sled.front_pad"
+    beam.add_slider(key)
+    assert "pad spacing" not in beam.controls
+    move(beam, key, 1)
+    agrees(beam)
+
+
+def test_a_dimension_of_a_section_slides_only_where_the_file_gives_it(beam, file):
+    if isinstance(beam.file.tables["beam"]["section"], str):
+        with pytest.raises(KeyError, match="comes with the section's name"):
+            beam.add_slider("beam.section.t_w")
+        return
+    beam.add_slider("beam.section.t_w")
+    move(beam, "beam.section.t_w", 1)
+    agrees(beam)
+    beam.controls["beam.section"].value = other_section(beam)
+    agrees(beam)
+    beam.show_in("us")
+    press(beam, "save")
+    assert "Saved" in said(beam)
+    assert "beam.section.t_w" not in beam.controls  # it has no place in the file any more
+    agrees(beam)
+
+
+def test_a_page_leaves_the_draft_of_another_one_alone(beam, file):
+    other = MainBeam(load(file))
+    move(beam, "cylinder.axis_height", 2)
+    kept = draft.kept(file)
+    other.parts.view.value = "actions"
+    assert draft.kept(file) == kept
+
+
+@pytest.mark.parametrize("factor", [0.0, -1.0])
+def test_a_check_without_demand_is_searched_and_shown(beam, factor):
+    beam.add_check(squash(lambda numbers, acting: factor * acting.N / numbers.section.A))
+    found = by_check_and_set(beam.worst)
+    assert found["mine", "usual"].given
+    assert found["mine", "extreme"].demand <= 0
+    move(beam, "skew_up", 2)
+    assert not stale(beam)
+
+
+@pytest.mark.parametrize(
+    ("demand", "why"),
+    [
+        (lambda numbers, acting: 1 / 0, "division by zero"),
+        (lambda numbers, acting: 1.0, "stations, points"),
+        (lambda numbers, acting: acting.N * np.nan, "not a finite number"),
+        (lambda numbers, acting: acting.N if acting.N.ndim == 2 else 1 / 0, "division by zero"),
+    ],
+)
+def test_a_check_that_fails_is_not_given_and_the_page_goes_on(beam, demand, why):
+    beam.add_check(squash(demand))
+    found = by_check_and_set(beam.worst)["mine", "usual"]
+    assert not found.given
+    assert not found.holds
+    assert why in found.why
+    move(beam, "skew_up", 2)
+    move(beam, "cylinder.axis_height", 2)
+    assert not stale(beam)
+    assert "NOT GIVEN" in beam.parts.bars.value
+
+
+def test_a_check_of_an_unknown_limit_is_refused(beam):
+    with pytest.raises(ValueError, match="known: yield"):
+        beam.add_check(squash(lambda numbers, acting: acting.N, limit="weld"))
+    move(beam, "skew_up", 2)
+    agrees(beam)
+
+
+def test_a_line_may_have_gaps_but_not_the_name_of_another_one(beam):
+    beam.add_line("half", lambda now: np.where(now.x > 1, np.nan, 5e7))
+    assert not stale(beam)
+    with pytest.raises(ValueError, match="name of a computed line"):
+        beam.add_line("top left", lambda now: now.x)
+    beam.add_line("wrong", lambda now: [1.0, 2.0])
+    assert stale(beam)
+    assert "wrong: a line needs one value" in beam.parts.sentence.value
+
+
+def test_one_height_of_contact_still_makes_a_page():
+    text = (worksheets_dir() / DEMOS[0]).read_text(encoding="utf-8")
+    lines = 'contact_low = "3 1/2 in"\ncontact_high = "3 1/2 in"\n'
+    for table in ("[moving_tool]\n", "[fixed_tool]\n"):
+        text = text.replace(table, table + lines)
+    agrees(MainBeam(parse_machine(text.encode())))
+
+
+def test_a_sled_that_just_stands_is_no_error():
+    text = (worksheets_dir() / DEMOS[0]).read_text(encoding="utf-8")
+    for old, new in (
+        ('rear_pad = "11 in"', 'rear_pad = "31 in"'),
+        ('pad_length = "3 in"', 'pad_length = "2.5 in"'),
+        ('rear_end = "-3 in"', 'rear_end = "-0.25 in"'),
+        ('longest = "24 in"', 'longest = "25 in"'),
+        ('stroke = "24 in"', 'stroke = "24 in"'),
+    ):
+        assert old in text
+        text = text.replace(old, new)
+    agrees(MainBeam(parse_machine(text.encode())))
+
+
+def test_a_message_goes_when_what_it_is_about_has_changed(beam):
+    press(beam, "worst extreme log")
+    assert said(beam)
+    beam.parts.view.value = "actions"
+    assert said(beam)
+    move(beam, "skew_left", -2)
+    assert said(beam) == ""
+
+
+def test_moving_back_by_hand_is_no_change(beam):
+    for name in ("cylinder.relief_pressure", "cylinder.axis_height"):
+        move(beam, name, 3)
+        move(beam, name, -3)
+        assert beam._machine.changes() == {}
+
+
+def test_the_equations_end_in_the_answer_and_say_when_a_check_does_not_apply(beam):
+    for check in beam.checks:
+        beam.choose(check.id)
+        f = next(f for f in beam.now.findings if f.check.id == check.id)
+        expected = f.answer() if f.applies else f.verdict()
+        assert html.escape(expected) in beam.parts.equations.value
+
+
+def test_a_closed_section_shows_the_stress_that_is_checked(beam):
+    if beam.numbers.section.open:
+        assert beam.now.checked is None
+        return
+    for name in ("usual", "extreme"):
+        press(beam, f"worst {name} log")
+        assert beam.now.checked.max() == pytest.approx(
+            next(f for f in beam.now.findings if f.check.id == "beam-first-yield").demand
+        )
+    assert "checked, with distortion" in beam.parts.labels.value

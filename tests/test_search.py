@@ -404,17 +404,17 @@ def test_a_step_past_any_limit_is_told_in_words(machine):
     words = {"a_y": ("right", "left"), "a_z": ("below", "above")}
     words |= {"b_y": words["a_y"], "b_z": words["a_z"]}
     for name, (low, high) in zip(OFFSETS, ends, strict=True):
-        for value, way in zip((low - 1e-5, high + 1e-5), words[name], strict=True):
+        for value, way in zip((low - 1e-4, high + 1e-4), words[name], strict=True):
             moved = Log(**{**plain, name: value})
             assert narrowest_set(numbers, moved, FIRST_BITE) == OUTSIDE
             tool = "moving" if name[0] == "a" else "fixed"
             told = past_limits(numbers, moved, FIRST_BITE)
             assert any(f"contact on the {tool} tool" in t and f" {way} " in t for t in told), told
-    steep = Log(plain["l_AB"], 0.0, 0.0, 0.0, plain["l_AB"] * (numbers.grip + 1e-6))
+    steep = Log(plain["l_AB"], 0.0, 0.0, 0.0, plain["l_AB"] * (numbers.grip + 1e-4))
     assert any("past the grip's" in told for told in past_limits(numbers, steep, FIRST_BITE))
-    for length, kind in ((numbers.longest + 1e-5, "longer"), (numbers.shortest - 1e-5, "shorter")):
+    for length, kind in ((numbers.longest + 1e-4, "longer"), (numbers.shortest - 1e-4, "shorter")):
         told = past_limits(numbers, Log(length, 0.0, 0.0, 0.0, 0.0), FIRST_BITE)
-        assert any(t.startswith("the log is") and kind in t for t in told), told
+        assert any(t.startswith("log ") and kind in t for t in told), told
 
 
 def test_a_set_that_allows_no_log_gets_no_numbers():

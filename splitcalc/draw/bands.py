@@ -56,9 +56,14 @@ class Bands(NamedTuple):
     def panel_room(self) -> Room:
         return Room(LEFT, self.above_room.bottom + GAP + 4, WIDTH - RIGHT, HEIGHT - BOTTOM)
 
-    def hold(self, doc: Document, section: Section) -> bool:
-        """Whether the cylinder is still in the picture."""
-        return cylinder_top(doc, section) <= self.z[1]
+    def suit(self, wanted: Bands, doc: Document, numbers: Numbers) -> bool:
+        """Whether cylinder and allowed contacts are still in the picture, and not much too small.
+
+        While they are it stays as it is: nothing jumps under a slider.
+        """
+        inside = cylinder_top(doc, numbers.section) <= self.z[1]
+        inside = inside and sideways_reach(numbers) <= self.y[1]
+        return inside and self.pixel <= 1.25 * wanted.pixel
 
 
 def cylinder_top(doc: Document, section: Section) -> float:

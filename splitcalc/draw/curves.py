@@ -18,7 +18,6 @@ from splitcalc.units import MINUS, NARROW_SPACE
 Style = tuple[str, Any]
 ROUND = (1, 1.5, 2, 3, 4, 5, 6, 8, 10)
 COARSE = (1, 2, 5, 10)
-OFF = 4  # css px between the curves and the nearest name
 
 
 def ceiling(value: float, steps: tuple[float, ...] = ROUND) -> float:
@@ -73,7 +72,7 @@ class Curves:
         self._x, self._values = x, values
         for name, line in self.lines.items():
             line.set_data(x, values[name])
-        most = max(float(np.abs(values[name]).max()) for name in self.lines)
+        most = max(float(np.nanmax(np.abs(values[name]), initial=0.0)) for name in self.lines)
         top = self._base if most <= self._base else ceiling(most, COARSE)
         stepped = top != self.shown
         if stepped:
@@ -88,35 +87,39 @@ class Curves:
             known = {} if values is None else values
             line.set_data(x, known.get(name, np.full(x.shape, np.nan)))
 
-    def labels(self, x: float, room: Room) -> list[Label]:
-        """The curves' names about x: one half over all curves there, one half under them.
+    def labels(self, x: tuple[float, float], room: Room) -> list[Label]:
+        """The curves' names, in their colours, beside them where they lie furthest apart.
 
-        In the order of the curves, in their colours; none lies on a curve or on a guide.
+        That is looked for from one x to the other. Names keep their curves' order, one line
+        apart, each as near to its curve as the others and the guides let it.
         """
         wide = CHARACTER * max(len(name) for name in self.lines)
-        middle = spot(self.axes, x, 0.0)[0]
-        middle = max(min(middle, room.right - wide / 2), room.left + wide / 2)
-        left, right = (self._at(middle + way * wide / 2, room) for way in (-1, 1))
-        over = np.linspace(left, right, 15)
-        found = [
-            (spot(self.axes, x, values[7])[1], values, name, str(line.get_color()))
-            for name, line in self.lines.items()
-            for values in (np.interp(over, self._x, self._values[name]),)
-        ]
-        found.sort(key=lambda item: round(item[0]))  # by the pixel: equal curves keep their order
-        every = np.array([values for _, values, _, _ in found])
-        top, low = (spot(self.axes, x, value)[1] for value in (every.max(), every.min()))
-        half = (len(found) + 1) // 2
-        guides = [spot(self.axes, x, value)[1] for value in self.guides]
-        places = _stack(top - OFF, -1, half, guides)[::-1]
-        places += _stack(low + OFF, 1, len(found) - half, guides)
+        ends = [spot(self.axes, one, 0.0)[0] for one in x]
+        low, high = room.left + wide / 2, room.right - wide / 2
+        start, end = (max(min(one, high), low) for one in ends)
+        across = np.linspace(start, end, 9)
+        places = np.array([self._at(place, room) for place in across])
+        known = {
+            name: np.interp(places, self._x, self._values[name])
+            for name in self.lines
+            if np.isfinite(self._values[name]).all()
+        }
+        apart_by = np.ptp(np.array([known[n] for n in known]), axis=0)
+        k = int(apart_by.argmax())
+        spots = sorted(
+            (spot(self.axes, places[k], values[k])[1], order, name)
+            for order, (name, values) in enumerate(known.items())
+        )
+        heights = _spread([y for y, _, _ in spots], room)
+        guides = [spot(self.axes, places[k], value)[1] for value in self.guides]
         return apart(
             (
-                label(name, (middle, y), color, "middle", room)
-                for (_, _, name, color), y in zip(found, places, strict=True)
+                label(name, (across[k], _off(y, guides)), str(self.lines[name].get_color()),
+                      "middle", room)
+                for y, (_, _, name) in zip(heights, spots, strict=True)
             ),
             room,
-        )
+        )  # fmt: skip
 
     def _at(self, across: float, room: Room) -> float:
         """The x at a place across the picture. [css px]"""
@@ -124,17 +127,33 @@ class Curves:
         return low + (high - low) * (across - room.left) / (room.right - room.left)
 
 
-def _stack(start: float, way: int, count: int, guides: Sequence[float]) -> list[float]:
-    """Middle heights of `count` lines of text, one after the other from `start`, off the guides."""
-    out: list[float] = []
-    for _ in range(count):
-        y = start + way * LINE / 2
-        for guide in sorted(guides, reverse=way < 0):
-            if abs(guide - y) < LINE / 2 + 1:
-                y = guide + way * (LINE / 2 + 1)
-        out.append(y)
-        start = y + way * (LINE / 2 + 0.5)
-    return out
+def _spread(heights: Sequence[float], room: Room) -> list[float]:
+    """Heights in order and one line apart, near the given ones, inside the room. [css px]
+
+    Names that would overlap stand together about the middle of their curves.
+    """
+    groups: list[list[float]] = []
+    for height in heights:
+        groups.append([height])
+        while len(groups) > 1 and _top(groups[-1]) < _top(groups[-2]) + LINE * len(groups[-2]):
+            last = groups.pop()
+            groups[-1] += last
+    out = [_top(group) + LINE * k for group in groups for k in range(len(group))]
+    over = max(0.0, out[-1] - (room.bottom - LINE / 2))
+    return [y - over for y in out]
+
+
+def _top(group: Sequence[float]) -> float:
+    """Height of the first of a group's names."""
+    return sum(group) / len(group) - LINE * (len(group) - 1) / 2
+
+
+def _off(y: float, guides: Sequence[float]) -> float:
+    """The height, moved off a guide that would strike the name through."""
+    for guide in guides:
+        if abs(guide - y) < LINE / 2:
+            return guide + (LINE / 2 if y > guide else -LINE / 2)
+    return y
 
 
 def _plain(value: float, units: Any) -> str:

@@ -7,7 +7,7 @@ from typing import NamedTuple
 
 from matplotlib.axes import Axes
 
-WIDTH, HEIGHT = 600, 570  # of the picture, css pixels
+WIDTH, HEIGHT = 600, 560  # of the picture, css pixels
 FONT = 9  # points
 CHARACTER, LINE = 6.2, 13.0  # css pixels of an average character of that size, and of a line
 STARTS = {"left": 0.0, "middle": 0.5, "right": 1.0}  # of its width, what lies left of the point

@@ -78,6 +78,7 @@ class MainBeamPicture:
         self.set_worst(worst or now.findings)
         self.canvas.moving(*self.views.moving, *self.panel.moving, self.mark)
         self._shown = (machine, now)
+        self._numbers = now.numbers
         self._mark_x: float | None = None
 
     def _place(self, machine: Machine, now: Present) -> None:
@@ -110,8 +111,11 @@ class MainBeamPicture:
         `mark` is the governing station [m], None for none.
         """
         self._shown = (machine, now)
-        if not self._bands.hold(machine.document, now.numbers.section):
-            self._place(machine, now)
+        if now.numbers is not self._numbers:
+            wanted = bands_of(machine.document, now.numbers)
+            if not self._bands.suit(wanted, machine.document, now.numbers):
+                self._place(machine, now)
+        self._numbers = now.numbers
         self.views.update(machine, now)
         if self.panel.update(now):
             self.canvas.thaw()

@@ -7,7 +7,7 @@ and bottom, light is the right side.
 INK = "#2b2b2b"
 QUIET = "#767c86"
 LIMIT = "#b3261e"
-THRUST = "#d55e00"
+THRUST = "#c25500"
 
 BEAM = "#d3d8de"
 FLANGE = "#aab2bd"
@@ -20,14 +20,14 @@ BARK = "#9c7638"
 NEAR_LOAD = "#24405f"  # laid on thinly, so that pinned curves and limits show through
 
 CORNERS = {
-    "top left": ("#005b96", "-"),
-    "top right": ("#3f9fdc", "-"),
-    "bottom left": ("#6a3d68", "-"),
-    "bottom right": ("#c26a9b", "-"),
+    "top left": ("#003f73", "-"),
+    "top right": ("#1b78b8", "-"),
+    "bottom left": ("#4f2450", "-"),
+    "bottom right": ("#ad4f85", "-"),
 }
 WEB = ("#93690a", (0, (4, 2)))
 OWN = (INK, (0, (1, 1.5)))
-UPRIGHT, SIDEWAYS = ("#005b96", "-"), ("#c26a9b", "-")
+UPRIGHT, SIDEWAYS = ("#003f73", "-"), ("#ad4f85", "-")
 WHOLE, SHARE = (INK, "-"), (QUIET, (0, (4, 2)))
 
 TENSION, COMPRESSION = "#0072b2", "#8a3f86"

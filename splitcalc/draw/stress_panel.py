@@ -22,6 +22,7 @@ from splitcalc.machine.numbers import Numbers
 from splitcalc.units import Dimension, factor, number, unit_text
 
 WEB = "web across"
+CHECKED = "checked, with distortion"
 
 
 Lines = Mapping[str, Callable[[Present], Any]]  # stress [Pa] at the stations, by name
@@ -45,6 +46,8 @@ class StressPanel:
         styles: dict[str, Style] = dict(palette.CORNERS)
         if numbers.section.open:
             styles[WEB] = palette.WEB
+        else:
+            styles[CHECKED] = palette.WEB
         styles |= dict.fromkeys(own, palette.OWN)
         self._limits = [numbers.f_y / required for required in numbers.required["yield"].values()]
         guides = [sign * limit * self._mpa for limit in self._limits for sign in (1, -1)]
@@ -85,6 +88,8 @@ class StressPanel:
         values = {name: stress * self._mpa for name, stress in now.corners.items()}
         if now.web is not None:
             values[WEB] = now.web * self._mpa
+        if now.checked is not None:
+            values[CHECKED] = now.checked * self._mpa
         for name, line in self._own.items():
             stress = np.asarray(line(now), dtype=float) * self._mpa
             if stress.shape not in ((), now.x.shape):
@@ -100,10 +105,12 @@ class StressPanel:
         numbers, patches = now.numbers, now.acting.frame.patches
         depth = numbers.section.h
         spots = ((patches["rear pad"][0], patches["front pad"][1]), patches["fixed tool"])
+        done = numbers.x_start
         for near, (start, end) in zip(self.near, spots, strict=True):
-            left = max(start - depth, numbers.x_start)
+            left = max(start - depth, done)  # the two never overlap: that would be a darker third
+            done = min(end + depth, numbers.x_end)
             near.set_x(left * self._mm)
-            near.set_width((min(end + depth, numbers.x_end) - left) * self._mm)
+            near.set_width((done - left) * self._mm)
         return self.curves.set(now.x * self._mm, self._values(now))
 
     def pin(self, now: Present | None) -> None:
@@ -115,4 +122,5 @@ class StressPanel:
     def labels(self, now: Present) -> list[Label]:
         """The curves' names over the log."""
         frame = now.acting.frame
-        return self.curves.labels(float(frame.x_A + frame.x_B) / 2 * self._mm, self._room)
+        log = (float(frame.x_A) * self._mm, float(frame.x_B) * self._mm)
+        return self.curves.labels(log, self._room)

@@ -13,7 +13,8 @@ from splitcalc.thrust.frame import Log
 from splitcalc.units import Dimension, number, show
 
 OUTSIDE = "outside"
-NEAR = 1e-9  # of the value and of a metre: rounding is not a step past a limit
+NEAR = 2e-5  # of a metre, of a slope: rounding of a typed text is not a step past a limit
+ROUNDING = 1e-9  # m
 TOOLS = {"a": "moving tool", "b": "fixed tool"}
 WAYS = {"y": ("right of", "left of"), "z": ("below", "above")}
 
@@ -31,8 +32,7 @@ def _places(numbers: Numbers, set_name: str, state: str, log: Log) -> Iterator[t
 
 
 def _outside(value: float, low: float, high: float) -> bool:
-    slack = NEAR * (1 + abs(value))
-    return not low - slack <= value <= high + slack
+    return not low - NEAR <= value <= high + NEAR
 
 
 def narrowest_set(numbers: Numbers, log: Log, state: str) -> str:
@@ -46,23 +46,26 @@ def narrowest_set(numbers: Numbers, log: Log, state: str) -> str:
 def past_limits(numbers: Numbers, log: Log, state: str, units: Any = "si") -> list[str]:
     """Every limit of the whole allowed set that a log is past, in words."""
     words = []
+    off: dict[str, list[str]] = {}  # by tool
     for name, value, low, high in _places(numbers, SETS[-1], state, log):
         if not _outside(value, low, high):
             continue
         if name == "slope":
             told, limit = (number(v, Dimension.NUMBER, units, 3) for v in (value, high))
-            words.append(f"the slope {told} is past the grip's {limit}")
+            words.append(f"slope {told} past the grip's {limit}")
             continue
         end = low if value < low else high
         told, by = (show(abs(v), Dimension.LENGTH, units, 3) for v in (end, value - end))
         if name == "distance":
             what = "log" if state == FIRST_BITE else "gap between the tools"
             kind = "shorter" if value < low else "longer"
-            words.append(f"the {what} is {by} {kind} than the allowed {told}")
+            words.append(f"{what} {by} {kind} than the allowed {told}")
         else:
             way = WAYS[name[2]][value > end]
-            words.append(f"the contact on the {TOOLS[name[0]]} lies {by} {way} its range")
-    return words
+            off.setdefault(TOOLS[name[0]], []).append(f"{by} {way}")
+    return words + [
+        f"contact on the {tool} {' and '.join(ways)} its range" for tool, ways in off.items()
+    ]
 
 
 def sled_reach(numbers: Numbers) -> tuple[float, float]:
@@ -77,13 +80,32 @@ def sled_reach(numbers: Numbers) -> tuple[float, float]:
     return max(float(nearest), 1e-6), float(farthest)
 
 
+def sled_off(numbers: Numbers, distance: float, units: Any = "si") -> str:
+    """Why the sled can't stand at a distance of the contacts, in words; empty when it can."""
+    least, most = sled_reach(numbers)
+    told = show(distance, Dimension.LENGTH, units)
+    if distance < least - ROUNDING:
+        limit = show(least, Dimension.LENGTH, units)
+        return (
+            f"with contact points {told} apart the front pad runs into the fixed tool's root "
+            f"weld; allowed: at least {limit}"
+        )
+    if distance > most + ROUNDING:
+        limit = show(most, Dimension.LENGTH, units)
+        return (
+            f"with contact points {told} apart the rear pad hangs over the beam's rear end; "
+            f"allowed: up to {limit}"
+        )
+    return ""
+
+
 def sideways_reach(numbers: Numbers) -> float:
     """How far off centre any allowed log touches a tool. [m]
 
     Beside a buried edge only the grip limits it: a contact can't be farther from the other one
     than the slope allows.
     """
-    distance = np.linspace(numbers.gap, numbers.longest, 33)
+    distance = np.linspace(numbers.gap, numbers.longest, 513)
     a, b = allowed(numbers, SHARE[SETS[-1]], True, distance).ends[[0, 2], 1]
     near, far = np.minimum(a, b), np.maximum(a, b)
     return float(np.minimum(far, near + numbers.grip * distance).max())

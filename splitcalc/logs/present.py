@@ -14,7 +14,7 @@ from splitcalc.logs.limits import OUTSIDE, narrowest_set, past_limits
 from splitcalc.logs.report import acting_on, find, in_set
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.shapes.section import Section
-from splitcalc.stress.normal_and_shear import signed_stresses
+from splitcalc.stress.normal_and_shear import equivalent_stress, signed_stresses
 from splitcalc.stress.web import web_stress
 from splitcalc.thrust.frame import Log
 from splitcalc.thrust.statics import Actions
@@ -28,8 +28,10 @@ class Present:
     """One log on one machine. Arrays over the stations `x`. [m, Pa]
 
     sigma : normal stress with its sign at all stress points, shape (stations, points); web :
-    equivalent stress at the top of the web, None for a closed section; set : narrowest set that
-    holds the log, `past` says in words why none does; findings : one a check and set that holds it
+    equivalent stress at the top of the web, None for a closed section; checked : for a closed
+    section the largest equivalent stress of all points, its distortion allowed for; set :
+    narrowest set that holds the log, `past` says in words why none does; findings : one a check
+    and set that holds it
     """
 
     numbers: Numbers
@@ -38,6 +40,7 @@ class Present:
     acting: Actions
     sigma: np.ndarray
     web: np.ndarray | None
+    checked: np.ndarray | None
     set: str
     past: tuple[str, ...]
     findings: tuple[Finding, ...]
@@ -99,6 +102,7 @@ def present(
         acting,
         signed_stresses(numbers, acting),
         web_stress(numbers, acting)[:, 0] if numbers.section.open else None,
+        None if numbers.section.open else equivalent_stress(numbers, acting).max(axis=-1),
         set_name,
         tuple(past_limits(numbers, log, state, units)) if set_name == OUTSIDE else (),
         tuple(in_set(finding, numbers, name) for finding in found for name in sets),

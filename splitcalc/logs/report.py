@@ -9,7 +9,7 @@ from typing import Any
 import numpy as np
 
 from splitcalc.equations import Line, recording
-from splitcalc.findings import Check, Finding, worst_place
+from splitcalc.findings import Check, Finding, evaluated, worst_place
 from splitcalc.logs.limits import bounds_met
 from splitcalc.logs.search import Spot, Steps, finish, search
 from splitcalc.machine.numbers import SETS, Numbers
@@ -42,12 +42,11 @@ def find(
     does, why = check.applies(numbers)
     if not does:
         return Finding(check, set_name, applies=False, why=why, units=units)
-    demand, capacity = check.evaluate(numbers, acting)
-    demand, capacity = np.broadcast_arrays(demand, capacity)
     try:
+        demand, capacity = evaluated(check, numbers, acting)
         _, index = worst_place(demand / capacity)
-    except FloatingPointError as error:
-        return Finding(check, set_name, given=False, why=str(error), units=units)
+    except Exception as error:  # a person's own check may raise anything; the others go on
+        return Finding(check, set_name, given=False, why=_why(error), units=units)
     station, point = np.unravel_index(int(index), demand.shape)
     place, log = float(acting.x[station, 0]), acting.frame.log
     alone = numbers.at_point(int(point)) if demand.shape[-1] > 1 else numbers
@@ -80,6 +79,10 @@ def find(
     )
 
 
+def _why(error: Exception) -> str:
+    return f"{error}" if isinstance(error, FloatingPointError) else f"{error!r}"
+
+
 def in_set(finding: Finding, numbers: Numbers, set_name: str) -> Finding:
     """The same finding judged as of another set: the stress stays, the required factor changes."""
     if finding.demand is None:
@@ -105,8 +108,8 @@ def findings_in_steps(
             why = NO_LOG
             try:
                 best = yield from search(check, numbers)
-            except FloatingPointError as error:
-                why = str(error)
+            except Exception as error:  # likewise
+                why = _why(error)
         for set_name in SETS:
             spot = best.get(set_name)
             if spot is None:

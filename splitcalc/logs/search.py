@@ -204,7 +204,8 @@ def _look(
     for net in nets:
         start, end = end, end + len(net.distance)
         top = tops[start:end]
-        near = np.greater_equal(values[start:end][top >= SEEN * top.max()], SEEN * top.max())
+        seen = min(SEEN * top.max(), top.max())  # a demand may be zero, or relieve
+        near = np.greater_equal(values[start:end][top >= seen], seen)
         near_x |= np.any(near, axis=(0, 2))
         near_p |= np.any(near, axis=(0, 1))
         for row in _peaks(top.max(axis=1)):
@@ -226,5 +227,6 @@ def _look(
 def _peaks(values: np.ndarray) -> list[int]:
     """Places no lower than their neighbours and near the highest; none where no log is allowed."""
     walled = np.pad(values, 1, constant_values=-np.inf)
-    high = (values >= walled[:-2]) & (values >= walled[2:]) & (values >= NEAR * values.max())
-    return [int(k) for k in np.flatnonzero(high & (values > 0))]
+    near = min(NEAR * values.max(), values.max())
+    high = (values >= walled[:-2]) & (values >= walled[2:]) & (values >= near)
+    return [int(k) for k in np.flatnonzero(high & np.isfinite(values))]

@@ -7,6 +7,7 @@ from collections.abc import Mapping, Sequence
 from typing import Any
 
 from splitcalc.findings import Finding, margin_text
+from splitcalc.logs.allowed import BURIED
 from splitcalc.logs.present import Present
 from splitcalc.logs.report import governing
 from splitcalc.units import Dimension, number, show
@@ -31,7 +32,12 @@ def lean(log: Mapping[str, Any]) -> str:
 
 
 def log_words(log: Mapping[str, Any], units: Any) -> str:
-    return f"{log['state']}, {show(log['distance_m'], Dimension.LENGTH, units, 3)}, {lean(log)}"
+    length = show(log["distance_m"], Dimension.LENGTH, units, 3)
+    return f"{log['state']}, {'gap ' if log['state'] == BURIED else ''}{length}, {lean(log)}"
+
+
+def article(word: str) -> str:
+    return "an" if word[0] in "aeio" else "a"
 
 
 def shortfall(utilisation: float) -> str:
@@ -39,6 +45,8 @@ def shortfall(utilisation: float) -> str:
     if utilisation == 0:
         return "has no demand"
     percent = abs(utilisation - 1) * 100
+    if percent < 0.05:
+        return f"is just {'over' if utilisation > 1 else 'under'} its limit"
     amount = f"{percent:.1f}" if percent < 10 else f"{percent:.0f}"
     return f"is {amount} % {'over' if utilisation > 1 else 'under'} its limit"
 
@@ -52,8 +60,8 @@ def this_log(now: Present, units: Any) -> str:
         return f"{worst.check.title} can't be given: {worst.why}."
     where = show(worst.x, Dimension.LENGTH, units, 3)
     return (
-        f"({log_words(worst.log, units)}) {worst.check.title} governs and "
-        f"{shortfall(worst.utilisation)} of {worst.set} logs, at x = {where}."
+        f"({article(worst.set)} {worst.set} one: {log_words(worst.log, units)}): "
+        f"{worst.check.title} governs and {shortfall(worst.utilisation)}, at x = {where}."
     )
 
 
@@ -73,6 +81,11 @@ def sentence(results: Sequence[Finding]) -> str:
         f"{shortfall(worst.utilisation)}, at x = {show(worst.x, Dimension.LENGTH, units, 3)}, "
         f"{worst.place}, for the log {log_words(worst.log, units)}."
     )
+
+
+def wrapped(text: str) -> str:
+    """Text broken between words, as wide as a notebook shows it."""
+    return textwrap.fill(text, WIDTH, break_on_hyphens=False)
 
 
 def still_open(not_yet: Sequence[str]) -> str:

@@ -199,6 +199,8 @@ def holder(tables: Any, key: str, make: Callable[[], Any]) -> tuple[Any, str]:
             tables = tables[step]
         else:
             rows, number = tables.get(part[1], ()), int(part[2])
+            if not isinstance(rows, list):
+                rows = ()
             if not 1 <= number <= len(rows):
                 raise KeyError(f"{key}: there are {len(rows)} tables [[{part[1]}]]")
             tables = rows[number - 1]

@@ -9,6 +9,7 @@ from splitcalc.inputs import Problem
 from splitcalc.machine.document import Beam, Document
 from splitcalc.materials import STEELS
 from splitcalc.shapes.families import built, dimensions
+from splitcalc.units import Dimension, show
 
 PADS = ("front_pad", "rear_pad", "pad_length")
 GUIDE = ("guide_front", "guide_length")
@@ -47,6 +48,10 @@ def misfits(document: Document) -> list[Problem]:
 
 
 Found = Iterator[tuple[str, str]]
+
+
+def _told(doc: Document, length: float) -> str:
+    return show(length, Dimension.LENGTH, doc.basis.units)  # type: ignore[arg-type]
 
 
 def _tools(doc: Document) -> Found:
@@ -118,7 +123,7 @@ def _beam(doc: Document) -> Found:
             yield (
                 key,
                 f'"{zone.start.text}" to "{zone.end.text}" is shorter than the section is deep '
-                f"({section.h * 1e3:.4g} mm); shorter side plates close nothing",
+                f"({_told(doc, section.h)}); shorter side plates close nothing",
             )
         if last is not None and zone.start.si <= last:
             yield key, "closed stretches must stand in order and apart"
@@ -167,7 +172,7 @@ def _cylinder_and_logs(doc: Document) -> Found:
         yield (
             "cylinder.stroke",
             f'"{cylinder.stroke.text}" does not fit: drawn in, the moving face stands '
-            f"{(face - cylinder.mount_x.si) * 1e3:.0f} mm ahead of the mount, and the closed "
+            f"{_told(doc, face - cylinder.mount_x.si)} ahead of the mount, and the closed "
             "cylinder is longer than its stroke. Move fixed_tool.edge_x forward or shorten it",
         )
     elif face < beam.rear_end.si:
@@ -201,13 +206,14 @@ def _sled(doc: Document) -> Found:
         yield (
             f"sled.{wanted[1]}",
             f'"{getattr(sled, wanted[1]).text}" is too much: drawn in, the rear pad hangs '
-            f"{over * 1e3:.0f} mm over the beam's rear end \"{doc.beam.rear_end.text}\"",
+            f"{_told(doc, over)} over the beam's rear end; at most "
+            f"{_told(doc, getattr(sled, wanted[1]).si - over)}",
         )
     ahead = edge - doc.logs.smallest_gap.si - front + length / 2
     if ahead > doc.fixed_tool.weld_start.si + 1e-9:
         yield (
             f"sled.{wanted[0]}",
-            f"at full stroke the front pad ends at {ahead * 1e3:.0f} mm, past the start of the "
+            f"at full stroke the front pad ends at {_told(doc, ahead)}, past the start of the "
             f'fixed tool\'s root weld "{doc.fixed_tool.weld_start.text}"',
         )
     shape = doc.beam.section
@@ -219,5 +225,5 @@ def _sled(doc: Document) -> Found:
                 yield (
                     f"sled.{key}",
                     f'"{entry.text}" is off the flange, whose half width is '
-                    f"{flange / 2 * 1e3:.4g} mm",
+                    f"{_told(doc, flange / 2)}",
                 )

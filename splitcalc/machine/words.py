@@ -15,10 +15,17 @@ WIDTH = 100
 def inputs_table(machine: Machine) -> list[str]:
     """Every input that says something about this machine; a default has a star. 100 columns."""
     idle = unused(machine.document)
-    lines = []
+    lines: list[str] = []
+    section = machine.tables["beam"]["section"]
+    named = isinstance(section, str)
     for key, fact, value, given in machine.inputs():
         if key in idle or (not given and value in ("", None)):
             continue
+        if named and key.startswith("beam.section."):
+            given = True  # by the section's name
+            if section:
+                lines.append(f"{'beam.section':<34} {section:<20} section of the tables, with:")
+                section = ""
         text = value.text if isinstance(value, Entry) else str(value)
         told = f"{text}{'' if given else ' *'}"
         if fact.dimension is None and not fact.options:  # free text, words of its own

@@ -41,5 +41,5 @@ def under(machine: Machine, log: Log, state: str = FIRST_BITE) -> Result:
 
 def worst(machine: Machine) -> Findings:
     """Every check's finding for each set, at its worst allowed log."""
-    numbers = machine.numbers()
+    numbers = Arguments(machine).numbers
     return Findings(findings(ALL, numbers, machine.units), numbers.notes)

@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from typing import Any
 
 from splitcalc.inputs import InputError, Problem, found
-from splitcalc.logs.limits import sled_reach
+from splitcalc.logs.limits import sled_off
 from splitcalc.logs.present import FIXED, TOOLS, log_through
 from splitcalc.machine.file import Machine
 from splitcalc.thrust.frame import Log
@@ -20,13 +20,14 @@ Pair = Any  # two of them: (left, up)
 # looked at; beyond that it is a slip, and the numbers overflow in the end.
 STEEPEST = math.radians(80)
 FARTHEST = 2.0  # m
-NEAR = 1e-9  # m: rounding is not a step past a limit
 
 
 class Arguments:
     """Reads the arguments of one call about a machine; keeps every problem until `done`."""
 
     def __init__(self, machine: Machine) -> None:
+        if not isinstance(machine, Machine):
+            raise TypeError(f"machine: found {found(machine)}; wanted: what splitcalc.load gives")
         self.numbers = machine.numbers()
         self._units = machine.units
         self.problems: list[Problem] = []
@@ -81,24 +82,11 @@ class Arguments:
         A pad past the rear end would leave a part of its force there that no section carries; a
         pad past the start of the fixed tool's root weld would run into the tool.
         """
-        least, most = sled_reach(self.numbers)
-        told = show(distance, Dimension.LENGTH, self._units)
         if distance <= 0:
+            told = show(distance, Dimension.LENGTH, self._units)
             self.refuse(name, f"the contact points are {told} apart; allowed: above 0")
-        elif distance < least - NEAR:
-            limit = show(least, Dimension.LENGTH, self._units)
-            self.refuse(
-                name,
-                f"with contact points {told} apart the front pad runs into the fixed tool's root "
-                f"weld; allowed: at least {limit}",
-            )
-        elif distance > most + NEAR:
-            limit = show(most, Dimension.LENGTH, self._units)
-            self.refuse(
-                name,
-                f"with contact points {told} apart the rear pad hangs over the beam's rear end; "
-                f"allowed: up to {limit}",
-            )
+        elif problem := sled_off(self.numbers, distance, self._units):
+            self.refuse(name, problem)
 
     def length(self, value: Value) -> float:
         """The argument of that name, as a distance of the contact points. [m]"""

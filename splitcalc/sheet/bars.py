@@ -10,8 +10,8 @@ from splitcalc.findings import Check, Finding, margin_text
 from splitcalc.machine.numbers import SETS
 
 KEY = (
-    "dark: this log, pale: the worst one; upper bar: usual logs, lower: extreme logs; the line is "
-    "the limit; margins: the worst log's"
+    "thin: this log, wide: the worst one, with its margin; upper bar: usual logs (contacts and "
+    "slope within half of their range), lower: extreme logs; the line is the limit"
 )
 LEAST_TOP = 1.2  # the bars' axis reaches at least so far: the limit at 1 is always in sight
 
@@ -31,7 +31,7 @@ def bars(
     The axis covers the worst allowed logs and steps up for one that is past them. The pinned log
     is a dotted mark.
     """
-    top = _top(now, _top(worst, LEAST_TOP))
+    top = _top(now, _top(pinned, _top(worst, LEAST_TOP)))
     kinds = [by_check_and_set(results) for results in (now, worst, pinned)]
     rows = "".join(
         "<div class='sc-row'>"

@@ -11,9 +11,10 @@ from ipywidgets import HTML, Box, Dropdown, FloatSlider, Text, ToggleButtons
 from traitlets import HasTraits, Instance
 
 from splitcalc.inputs import Entry, Fact, read_value
-from splitcalc.units import MINUS, NARROW_SPACE, factor, show, unit_text
+from splitcalc.units import MINUS, factor, unit_text
 
 STEPS = 100  # a slider has at least so many
+LEAST = 1e-3  # of an SI unit: half of the shortest slider
 
 
 class Number(HasTraits):
@@ -37,13 +38,17 @@ class Number(HasTraits):
     ) -> None:
         super().__init__(value=value)
         assert fact.dimension is not None
-        self.fact, self._units = fact, units
+        self.label, self.fact = label, fact
         self._per = factor(fact.dimension, units)
         self._unit = unit_text(fact.dimension, units)
         low, high = (min(max(end, fact.low), fact.high) * self._per for end in ends)
+        if not high > low:  # a single place: the slider still has to be one
+            low, high = low - LEAST * self._per, high + LEAST * self._per
         self._step = quiet_step(high - low)
         self._digits = max(0, -math.floor(math.log10(self._step) + 1e-9))
         self._busy = False
+        self._home = value
+        self._refusal = self._misfit = ""
         self._slider = FloatSlider(
             min=round(math.floor(low / self._step + 1e-9) * self._step, self._digits),
             max=round(math.ceil(high / self._step - 1e-9) * self._step, self._digits),
@@ -62,38 +67,59 @@ class Number(HasTraits):
         self._field.observe(self._typed, "value")
         self.observe(lambda _: self._show(), "value")
 
+    @property
+    def refused(self) -> bool:
+        """Whether the field holds a text that can't be used."""
+        return bool(self._refusal)
+
     def tell(self, problem: str) -> None:
-        """Shows what is wrong with the number, or takes that away when there is nothing."""
-        text = f"<div class='splitcalc-error'>{html.escape(problem)}</div>" if problem else ""
-        if self._error.value != text:
-            self._error.value = text
+        """Shows why the machine can't be used with this number; nothing takes that away.
+
+        What is wrong with a text in the field stays until the text is mended.
+        """
+        self._misfit = problem
+        self._show_error()
+
+    def _show_error(self) -> None:
+        text = html.escape(self._refusal or self._misfit)
+        self._error.value = f"<div class='splitcalc-error'>{text}</div>" if text else ""
 
     def _show(self) -> None:
-        """Slider and field as the value is; a value past the slider's end takes the end along."""
-        value = self.value.si * self._per
+        """Field and slider as the value is; past the slider's end its handle stays at the end."""
         self._busy = True
-        self._slider.min, self._slider.max = (
-            min(self._slider.min, value),
-            max(self._slider.max, value),
-        )
-        if abs(self._slider.value - value) > 1e-9 * max(1.0, abs(value)):  # no echo of a drag
-            self._slider.value = value
-        self._field.value = self._text(value)
+        if self._moved(self._slider.value):  # no echo of a drag
+            self._slider.value = self._handle()
+        self._field.value = self._text(self.value.si * self._per)
         self._busy = False
-        self.tell("")
+        self._refusal = self._misfit = ""
+        self._show_error()
+
+    def _handle(self, entry: Entry | None = None) -> float:
+        """Where a browser puts the handle for the value: inside the ends, on a step.
+
+        It answers any other place with this one, and that answer is no move of the person.
+        """
+        low, high = self._slider.min, self._slider.max
+        value = min(max((entry or self.value).si * self._per, low), high)
+        return float(min(low + math.floor((value - low) / self._step + 0.5) * self._step, high))
+
+    def _moved(self, place: float) -> bool:
+        return abs(place - self._handle()) > 1e-6 * self._step
 
     def _text(self, value: float) -> str:
         rounded = round(value, self._digits)
         if abs(rounded - value) <= 1e-9 * max(1.0, abs(value)):
             text = f"{rounded + 0.0:.{self._digits}f}".replace("-", MINUS)
             return f"{text} {self._unit}".rstrip()
-        assert self.fact.dimension is not None
-        return show(self.value.si, self.fact.dimension, self._units, 5).replace(NARROW_SPACE, " ")
+        digits = max(0, 4 - math.floor(math.log10(abs(value))))  # without separators: it is read
+        return f"{value:.{digits}f} {self._unit}".replace("-", MINUS).rstrip()
 
     def _slid(self, change: Any) -> None:
-        # A browser answers a value between two steps with the nearest step: that is no move.
-        moved = abs(change["new"] - self.value.si * self._per) > 0.51 * self._step
-        if moved and not self._busy:
+        if self._busy or not self._moved(change["new"]):
+            return
+        if abs(change["new"] - self._handle(self._home)) <= 1e-6 * self._step:
+            self.value = self._home  # also where it lies between two steps
+        else:
             on_grid = round(change["new"] / self._step) * self._step
             self._take(self._text(on_grid))
 
@@ -105,7 +131,8 @@ class Number(HasTraits):
         try:
             value = read_value(text.strip(), self.fact)
         except ValueError as error:
-            self.tell(str(error))
+            self._refusal = str(error)
+            self._show_error()
             return
         if value == self.value:
             self._show()  # no change to observe

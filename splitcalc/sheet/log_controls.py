@@ -10,7 +10,7 @@ from ipywidgets import Button, VBox
 
 from splitcalc.inputs import Entry, Fact
 from splitcalc.logs.allowed import FIRST_BITE, STATES
-from splitcalc.logs.limits import sideways_reach, sled_reach
+from splitcalc.logs.limits import sideways_reach
 from splitcalc.logs.present import FIXED, MOVING, log_through
 from splitcalc.machine.numbers import Numbers
 from splitcalc.sheet.controls import Number, buttons_of
@@ -20,6 +20,7 @@ from splitcalc.units import Dimension, show
 PAST = 1.25  # the sliders go this far past the limits, so that the limits can be seen
 STEEPEST = math.radians(60)  # what may be typed
 FAR = 1.0  # m, likewise
+NEAREST, FARTHEST = 1e-4, 10.0  # m, likewise
 PIVOTS = {"fixed tool": FIXED, "ram": MOVING}
 WORDS = ("state", "pivot")
 NUMBERS = ("skew_up", "skew_left", "contact_up", "contact_left", "distance")
@@ -93,7 +94,7 @@ class LogControls:
             ),
             "distance": (
                 "log length, gap", Fact("distance of the two contacts along the beam", length,
-                                        *sled_reach(numbers)),
+                                        NEAREST, FARTHEST),
                 (numbers.gap, 1.05 * numbers.longest),
             ),
         }  # fmt: skip

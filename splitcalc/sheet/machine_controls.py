@@ -2,13 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
+from types import MappingProxyType
 from typing import Any
 
 from ipywidgets import VBox
 
 from splitcalc.inputs import Entry, Fact
 from splitcalc.machine.file import Machine
+from splitcalc.machine.fit import GUIDE as GUIDE_KEYS
+from splitcalc.machine.fit import PADS as PAD_KEYS
 from splitcalc.materials import STEELS
 from splitcalc.shapes.tables import all_sections
 from splitcalc.sheet.controls import Number, around, list_of
@@ -18,8 +21,12 @@ PRESSURE, HEIGHT = "cylinder.relief_pressure", "cylinder.axis_height"
 SECTION, STEEL = "beam.section", "beam.steel"
 # What a slider moves without a new background of the picture.
 MOVES = {PRESSURE, HEIGHT, "sled.rear_pad", "sled.guide_length"}
-LABELS = {PRESSURE: "relief pressure", HEIGHT: "axis height"}
-SPACING = Fact("the sled's two pads, middle to middle", Dimension.LENGTH, 0.01, 3.0)
+SPACING = "pad spacing"
+LABELS = {PRESSURE: "relief pressure", HEIGHT: "axis height", SPACING: "pad spacing"}
+SPACED = Fact("the sled's two pads, middle to middle", Dimension.LENGTH, 0.01, 3.0)
+# Changes that have a control without anybody's doing.
+OFFERED = {PRESSURE, HEIGHT, SECTION, STEEL, "sled.rear_pad", "sled.guide_length"}
+PADS = {f"sled.{key}" for key in (*PAD_KEYS, *GUIDE_KEYS)}
 
 
 class MachineControls:
@@ -29,33 +36,41 @@ class MachineControls:
     ----------
     file : the machine as it stands in its file
     now : the machine with the changes that the controls begin with
-    more : dotted keys that want a slider as well
+    more : dotted keys that want a slider as well; one for a pad takes the place of `pad spacing`
+    entries : values that controls before these had, by name: they are kept, also refused ones
     """
 
-    def __init__(self, file: Machine, now: Machine, units: Any, more: Sequence[str] = ()) -> None:
-        self._file, self._units = file, units
+    def __init__(
+        self,
+        file: Machine,
+        now: Machine,
+        units: Any,
+        more: Sequence[str] = (),
+        entries: Mapping[str, Any] = MappingProxyType({}),
+    ) -> None:
+        self._file = file
+        self._in_file = {key: value for key, _, value, _ in file.inputs()}
+        self._in_file[SPACING] = _spacing(file)
         sections = {name: name for name in all_sections()}
         for machine in (file, now):
             if machine.section_name not in sections:
                 sections = {f"{machine.section_name} (file)": "", **sections}
         chosen = now.section_name if now.section_name in all_sections() else ""
-        steel = now.document.beam.steel
+        steels = {name: name for name in STEELS}
         self.controls: dict[str, Any] = {
-            SECTION: list_of("section", sections, chosen, "the main beam"),
-            STEEL: list_of("steel", {name: name for name in STEELS}, steel, "of the main beam"),
+            SECTION: list_of("section", sections, entries.get(SECTION, chosen), "the main beam"),
+            STEEL: list_of(
+                "steel", steels, entries.get(STEEL, now.document.beam.steel), "of the main beam"
+            ),
         }
-        inputs = {key: (fact, value) for key, fact, value, _ in now.inputs()}
         self.numbers: dict[str, Number] = {}
-        for key in (PRESSURE, HEIGHT, *more):
-            fact, value = slidable(inputs, key)
+        keys = [PRESSURE, HEIGHT, *([] if PADS & set(more) else [SPACING]), *more]
+        for key in keys:
+            fact, value = (SPACED, _spacing(now)) if key == SPACING else slidable(now, key)
             label = LABELS.get(key, key.rpartition(".")[2].replace("_", " "))
-            self.numbers[key] = Number(label, fact, value, around(fact, value.si), units)
-            if key == HEIGHT:
-                spacing = _spacing(now)
-                self.numbers["pad spacing"] = Number(
-                    "pad spacing", SPACING, spacing, around(SPACING, spacing.si), units
-                )
-        self._file_spacing = _spacing(file)
+            control = Number(label, fact, value, around(fact, value.si), units)
+            control.value = entries.get(key, value)
+            self.numbers[key] = control
         self.controls |= self.numbers
         self.box = VBox(
             [self.controls[SECTION], self.controls[STEEL], *(n.box for n in self.numbers.values())]
@@ -69,47 +84,66 @@ class MachineControls:
             out[SECTION] = section
         if steel != self._file.document.beam.steel:
             out[STEEL] = steel
-        inputs = {key: value for key, _, value, _ in self._file.inputs()}
         for key, control in self.numbers.items():
             entry = control.value
-            if key == "pad spacing":
-                if abs(entry.si - self._file_spacing.si) > 1e-9:
-                    out |= self._spaced(entry.si)
-            elif entry.si != inputs[key].si:
+            if key == SPACING:
+                if abs(entry.si - self._in_file[key].si) > 1e-9:
+                    out |= self._spaced(entry)
+            elif SECTION in out and key.startswith(SECTION):
+                continue  # a dimension of the section that was there before
+            elif entry.si != self._in_file[key].si:
                 out[key] = entry.text
         return out
 
-    def tell(self, problems: Sequence[Any]) -> None:
-        """Shows each problem under the control that it is about."""
+    def tell(self, problems: Sequence[Any]) -> list[Any]:
+        """Shows each problem under the control that it is about; those without one come back."""
+        left = list(problems)
         for key, control in self.numbers.items():
-            at = "sled.rear_pad" if key == "pad spacing" else key
-            control.tell("; ".join(p.message for p in problems if p.key == at))
+            mine = [p for p in problems if p.key in (PADS if key == SPACING else (key,))]
+            control.tell("; ".join(p.message for p in mine))
+            left = [p for p in left if p not in mine]
+        return left
 
-    def _spaced(self, spacing: float) -> dict[str, str]:
-        """What the file says for pads so far apart; the front pad stays where it is."""
+    def entries(self) -> dict[str, Any]:
+        """The controls' values, for controls that take their place."""
+        return {key: control.value for key, control in self.controls.items()}
+
+    def refused(self) -> list[str]:
+        """Labels of the fields whose text can't be used."""
+        return [control.label for control in self.numbers.values() if control.refused]
+
+    def _spaced(self, spacing: Entry) -> dict[str, str]:
+        """What the file says for pads so far apart, in the unit that the spacing was given in.
+
+        The front pad, or the guide's front end, stays where it is.
+        """
         sled = self._file.document.sled
         if sled.guide == "continuous":
-            key, value = "sled.guide_length", spacing * 3 / 2
+            key, value = "sled.guide_length", spacing.si * 3 / 2
         else:
             assert sled.front_pad is not None
-            key, value = "sled.rear_pad", sled.front_pad.si + spacing
-        shown = round(value * factor(Dimension.LENGTH, self._units), 9)
-        return {key: f"{shown:.9g} {unit_text(Dimension.LENGTH, self._units)}"}
+            key, value = "sled.rear_pad", sled.front_pad.si + spacing.si
+        inch = unit_text(Dimension.LENGTH, "us")
+        system: Any = "us" if spacing.text.endswith(inch) else "si"
+        shown = value * factor(Dimension.LENGTH, system)
+        return {key: f"{shown:.9g} {unit_text(Dimension.LENGTH, system)}"}
 
 
-def slidable(inputs: dict[str, tuple[Fact, Any]], key: str) -> tuple[Fact, Entry]:
+def slidable(machine: Machine, key: str) -> tuple[Fact, Entry]:
     """The facts and the value of an input that a slider can move.
 
     Raises
     ------
-    KeyError : for a key that is not a number of the machine, or has no value yet
+    KeyError : for a key that is not a number of the machine, or has no value in its file
     """
-    numbers = {name: pair for name, pair in inputs.items() if pair[0].dimension is not None}
+    numbers = {name: (f, v) for name, f, v, _ in machine.inputs() if f.dimension is not None}
     if key not in numbers:
         raise KeyError(f"{key} is not a number of the machine; known: {', '.join(numbers)}")
     fact, value = numbers[key]
     if value is None:
         raise KeyError(f"{key} has no value in the machine file ({fact.reason}); give it one there")
+    if key.startswith(SECTION) and isinstance(machine.tables["beam"]["section"], str):
+        raise KeyError(f"{key} comes with the section's name; give its dimensions in the file")
     return fact, value
 
 

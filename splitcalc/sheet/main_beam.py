@@ -3,7 +3,11 @@
 from __future__ import annotations
 
 import html
-from collections.abc import Callable, Generator
+import math
+import re
+from collections.abc import Callable, Generator, Mapping
+from time import perf_counter
+from types import MappingProxyType
 from typing import Any
 
 from ipywidgets import HTML, Layout, VBox
@@ -12,10 +16,11 @@ from splitcalc.cautions import CAUTIONS, NOT_COVERED
 from splitcalc.checks import ALL, NOT_YET
 from splitcalc.draw.main_beam import MainBeamPicture, still
 from splitcalc.draw.section import section_svg
+from splitcalc.draw.stress_panel import CHECKED, WEB
 from splitcalc.findings import Check, Finding
 from splitcalc.inputs import InputError
-from splitcalc.logs.limits import sled_reach
-from splitcalc.logs.present import Present, present
+from splitcalc.logs.limits import sled_off
+from splitcalc.logs.present import CORNERS, Present, present
 from splitcalc.logs.report import findings, findings_in_steps, governing
 from splitcalc.logs.words import sentence, still_open, this_log
 from splitcalc.machine.draft import Draft, drop, keep, kept
@@ -26,12 +31,16 @@ from splitcalc.sheet.bars import bars, by_check_and_set
 from splitcalc.sheet.controls import buttons_of
 from splitcalc.sheet.live import Live, Work
 from splitcalc.sheet.log_controls import LogControls, log_of, plain, straight, values_of
-from splitcalc.sheet.machine_controls import MOVES, MachineControls
+from splitcalc.sheet.machine_controls import MOVES, OFFERED, MachineControls, slidable
 from splitcalc.sheet.page import Page, button, heading, named, row, small
 from splitcalc.sheet.style import ROW
 from splitcalc.thrust.frame import Log
-from splitcalc.units import Dimension, show
 
+# Seconds. While a hand moves, words and bars change no quicker than an eye can read, so that the
+# picture keeps up with it; when it stops they follow.
+READ, SETTLE = 0.12, 0.05
+NONE: Mapping[str, Any] = MappingProxyType({})
+SHORT = re.compile(r"(\S+ % over its limit|just over its limit|\d+ of \d+ findings fall short)")
 REST = 0.4  # seconds that the hand rests before equations are written and the draft is kept
 
 
@@ -39,7 +48,7 @@ class MainBeam:
     """The page and what it knows; `page` is what a notebook shows.
 
     file : the machine as it stands in its file; machine : with the changes of the controls
-    now : the log of the controls; worst : findings at the worst allowed logs of `machine`
+    now : the log of the controls, None while there is none
     controls : by name, each with a `value`
     """
 
@@ -50,8 +59,8 @@ class MainBeam:
         self.units = machine.units
         self.checks: tuple[Check, ...] = ALL
         self.numbers = machine.numbers()
-        self.worst = findings(self.checks, self.numbers, self.units)
-        worst = governing(self.worst)
+        self._worst = findings(self.checks, self.numbers, self.units)
+        worst = governing(self._worst)
         self.chosen = worst.check.id if worst else self.checks[0].id
         self.now: Present | None = None
         self.pinned: Present | None = None
@@ -61,30 +70,40 @@ class MainBeam:
         self._search: Generator[None, None, list[Finding]] | None = None
         self._pictures: dict[str, MainBeamPicture] = {}  # by what they show under the machine
         self._panel = "stress"
+        self._told: Present | None = None  # whose words and bars are shown, and since when
+        self._told_at = -math.inf
         self._pin = self._button("pin curves", "keep the present curves, to compare", self.pin)
         go = [
             self._button(f"worst {name} log", f"{name} logs, of the chosen check", self.go, name)
             for name in SETS
         ]
-        self.parts = Page(
-            pin=self._pin, worst=go,
-            open_points=still_open(NOT_YET),
-            foot=_foot(self.numbers.notes),
-        )
+        self.parts = Page(pin=self._pin, worst=go, open_points=still_open(NOT_YET))
         self.page = self.parts.box
+        self._kept = None if machine.path is None else kept(machine.path)
+        self._wrote = False  # whether the draft beside the file is this page's
+        self._said_about: Any = None  # what the message under the buttons was said about
         self._make_names()
         self._make_controls(straight(self.numbers))
-        self._kept = None if machine.path is None else kept(machine.path)
-        self._offer_draft()
         self.live.draw()
+
+    @property
+    def worst(self) -> list[Finding]:
+        """Findings at the worst allowed logs of `machine`; waits for the search."""
+        while self._search is not None:
+            self._search_on()
+        return self._worst
 
     def _button(self, text: str, tooltip: str, action: Callable[..., None], *args: object) -> Any:
         return button(text, tooltip, lambda: self.live.guard(action, *args))
 
-    def _make_controls(self, values: dict[str, Any]) -> None:
-        """New controls: for a file read anew, for other units, for one more slider."""
+    def _make_controls(self, values: dict[str, Any], entries: Mapping[str, Any] = NONE) -> None:
+        """New controls: for a file read anew, for other units, for one more slider.
+
+        `entries` are those of the machine's controls before, which are kept.
+        """
+        self._sliders = [key for key in self._sliders if self._slides(key)]
         log = LogControls(self.numbers, self.units, values)
-        machine = MachineControls(self.file, self.machine, self.units, self._sliders)
+        machine = MachineControls(self.file, self.machine, self.units, self._sliders, entries)
         units = buttons_of(
             "units", (("US", "us"), ("SI", "si")), self.units,
             "to show; typed numbers carry their own, the file stays as it is",
@@ -97,11 +116,19 @@ class MainBeam:
         self.live = Live(self.controls, self._update, self._show_error)
         self._offer = VBox()
         self.parts.rail.children = [
-            heading("log"), log.box, heading("machine"), machine.box, units,
+            self._offer, heading("log"), log.box, heading("machine"), machine.box, units,
             row(self._button("back to file", "the file's values, read anew", self.back),
                 self._button("save", "write the changes to the machine file", self.save)),
-            self.parts.unsaved_line, self.parts.message, self._offer,
+            self.parts.unsaved_line, self.parts.message,
         ]  # fmt: skip
+        self._offer_draft()
+
+    def _slides(self, key: str) -> bool:
+        try:
+            slidable(self.machine, key)
+        except KeyError:
+            return False  # its place in the file is gone, with the section that was there
+        return True
 
     def _make_names(self) -> None:
         """A button beside each bar."""
@@ -125,18 +152,16 @@ class MainBeam:
 
     def go(self, set_name: str) -> None:
         """Sets the controls to the worst log of the chosen check in a set."""
-        finding = by_check_and_set(self.worst).get((self.chosen, set_name))
+        finding = by_check_and_set(self._worst).get((self.chosen, set_name))
         if self._search is not None or finding is None or finding.log is None:
             why = "it is being searched" if self._search is not None else finding and finding.why
-            self.parts.say(f"There is no worst {set_name} log of this check to go to: {why}.")
+            self._say(f"There is no worst {set_name} log of this check to go to: {why}.")
             return
         with self.live.together():
             self._log.take(_values(finding, self._log.controls["pivot"].value))
             if self.parts.view.value == "equations":
                 self.parts.view.value = "stress"
-        self.parts.say(
-            f"Worst {set_name} log of “{finding.check.title}”: {finding.log['bound']}."
-        )
+        self._say(f"Worst {set_name} log of “{finding.check.title}”: {finding.log['bound']}.")
 
     def pin(self) -> None:
         """Keeps the present curves in the picture, or takes them away again."""
@@ -152,7 +177,7 @@ class MainBeam:
             self.file = load(self.file.path)
         self._begin(self.file, {})
         self._make_controls(straight(self.numbers))
-        self.parts.say("Back to the values of the file.")
+        self._say("Back to the values of the file.")
         self.live.draw()
 
     def save(self) -> None:
@@ -160,22 +185,24 @@ class MainBeam:
         changes = self._machine.changes()
         if self.file.path is None:
             raise SaveError("This machine was not read from a file: there is none to save to.")
+        if self._machine.refused():
+            raise SaveError(f"Nothing saved: {', '.join(self._machine.refused())} can't be read.")
         if not changes:
-            self.parts.say("Nothing to save: the machine is as in its file.")
+            self._say("Nothing to save: the machine is as in its file.")
             return
         self.file = save(self.file.path, self.file, changes)
         values = self._log.values()
         self._begin(self.file, {})
         self._make_controls(values)
-        self.parts.say(f"Saved: {_told(changes)}.")
+        self._say(f"Saved: {_told(changes)}.")
         self.live.draw()
 
     def show_in(self, units: Any) -> None:
         """Shows the other unit system; the state stays what it is."""
-        values = self._log.values()
+        values, entries = self._log.values(), self._machine.entries()
         self.units = units
         self._begin(self.machine, self._changes)
-        self._make_controls(values)
+        self._make_controls(values, entries)
         self.live.draw()
 
     # --- a person's own -----------------------------------------------------------------------
@@ -187,22 +214,35 @@ class MainBeam:
         ------
         KeyError : for a key that is no number of the machine, or has no value
         """
-        self._sliders.append(key)
-        try:
-            self._make_controls(self._log.values())
-        except KeyError:
-            self._sliders.remove(key)
-            raise
+        slidable(self.file, key)
+        if key not in self._sliders:
+            self._sliders.append(key)
+        self._make_controls(self._log.values(), self._machine.entries())
         self.live.draw()
 
     def add_line(self, name: str, stress: Callable[[Present], Any]) -> None:
-        """One more line along the beam; `stress` gives it [Pa] at the stations `now.x`."""
+        """One more line along the beam; `stress` gives it [Pa] at the stations `now.x`.
+
+        Raises
+        ------
+        ValueError : for the name of a line that is there already
+        """
+        if name in (*CORNERS, WEB, CHECKED):
+            raise ValueError(f"{name!r} is the name of a computed line; give yours another one")
         self._lines[name] = stress
         self._pictures.clear()
         self.live.draw()
 
     def add_check(self, check: Check) -> None:
-        """One more check, with its bar, its worst logs and its equations."""
+        """One more check, with its bar, its worst logs and its equations.
+
+        Raises
+        ------
+        ValueError : for a limit that no required factor belongs to
+        """
+        if check.limit not in self.numbers.required:
+            known = ", ".join(self.numbers.required)
+            raise ValueError(f"the check's limit is {check.limit!r}; known: {known}")
         self.checks = (*(c for c in self.checks if c.id != check.id), check)
         self._begin(self.machine, self._changes)
         self._make_names()
@@ -220,6 +260,10 @@ class MainBeam:
 
     def _update(self, controls: dict[str, Any]) -> None:
         changes = self._machine.changes()
+        about = (changes, {k: v for k, v in controls.items() if k != "view"})
+        if self._said_about not in (None, about):
+            self.parts.say("")
+        self._said_about = about
         if changes != self._changes:
             machine = self.file.changed(changes)
             other = {key for key, _ in changes.items() ^ self._changes.items()}
@@ -227,7 +271,9 @@ class MainBeam:
         self._machine.tell([])
         values = plain(controls)
         self.now = self._present(values)
-        self._show(values)
+        self._draw(values)
+        if perf_counter() - self._told_at > READ:
+            self._tell()
         self.parts.stale(False)
         self.live.run_slices(self._afterwards(values))
 
@@ -240,52 +286,54 @@ class MainBeam:
         self.parts.waiting(True)
 
     def _present(self, values: dict[str, Any]) -> Present:
-        reach = sled_reach(self.numbers)
-        if not reach[0] <= values["distance"] <= reach[1]:
-            told = [show(x, Dimension.LENGTH, self.units, 3) for x in (values["distance"], *reach)]
-            raise ValueError(
-                f"log length, gap: at {told[0]} the sled does not stand on the beam; "
-                f"{told[1]} to {told[2]} are possible"
-            )
+        problem = sled_off(self.numbers, values["distance"], self.units)
+        if problem:
+            raise ValueError(f"log length, gap: {problem}")
         return present(self.checks, self.numbers, log_of(values), self.units, values["state"])
 
-    def _show(self, values: dict[str, Any]) -> None:
+    def _draw(self, values: dict[str, Any]) -> None:
+        """The picture and the texts on it."""
         now = self.now
         assert now is not None
         view = values["view"]
         if view != "equations":
             self._panel = view
+        self.parts.show_view(view)
         picture = self._picture(now)
-        governs = governing(now.findings)
-        x = float(now.x[0]) if governs is None or governs.x is None else governs.x
         told = {**values, **self._changes, "units": self.units}
-        parts = self.parts
-        parts.image.value = picture.render(self.machine, now, told, x)
-        parts.labels.value = "".join(map(_label, picture.labels()))
-        svg = section_svg(now, int(abs(now.x - x).argmin()), self.units)
+        self.parts.image.value = picture.render(self.machine, now, told, _station(now))
+        self.parts.labels.value = "".join(map(_label, picture.labels()))
+
+    def _tell(self) -> None:
+        """Section, bars and sentences."""
+        self._told, self._told_at = self.now, perf_counter()
+        now, parts = self.now, self.parts
+        assert now is not None
+        x = _station(now)
+        svg = "" if x is None else section_svg(now, int(abs(now.x - x).argmin()), self.units)
         parts.section.value = f"<div class='splitcalc-drawn'>{svg}</div>"
         parts.bars.value = bars(
             self.checks,
             now.findings,
-            self.worst,
+            self._worst,
             () if self.pinned is None else self.pinned.findings,
         )
-        all_logs = "being searched …" if self._search else sentence(self.worst)
+        all_logs = "being searched …" if self._search else sentence(self._worst)
         parts.sentence.value = (
-            f"<div><b>This log</b> {html.escape(this_log(now, self.units))} "
-            f"<b>All allowed logs</b>: {html.escape(all_logs)} <b>Not yet checked</b>: "
+            f"<div><b>This log</b> {_red(this_log(now, self.units))} "
+            f"<b>All allowed logs</b>: {_red(all_logs)} <b>Not yet checked</b>: "
             f"{len(NOT_YET)} kinds of failure, listed under the bars.</div>"
         )
-        past = f"Not an allowed log: {'; '.join(now.past)}. It is judged as an extreme one."
+        past = f"Not an allowed log, judged as an extreme one: {'; '.join(now.past)}."
         parts.past.value = f"<div>{html.escape(past)}</div>" if now.past else ""
         parts.unsaved(_told(self._changes))
-        parts.show_view(view)
+        parts.foot.value = small(_foot(self.numbers.notes))
 
     def _picture(self, now: Present) -> MainBeamPicture:
         """The picture of the chosen panel, made when it is first wanted."""
         if self._panel not in self._pictures:
             picture = MainBeamPicture(
-                self.machine, now, self.worst, self.units, self._panel, self._lines
+                self.machine, now, self._worst, self.units, self._panel, self._lines
             )
             picture.pin(self.pinned)
             self._pictures[self._panel] = picture
@@ -293,28 +341,46 @@ class MainBeam:
 
     def _afterwards(self, values: dict[str, Any]) -> Work:
         """What can wait: the search, then, when the hand rests, equations and draft."""
+        if self._told is not self.now:
+            yield SETTLE
+            self._tell()
         yield None
         while self._search is not None:
             # not `yield from`: a drag drops this work, and the search goes on where it stands
-            try:
-                next(self._search)
-            except StopIteration as end:
-                self.worst, self._search = end.value, None
-                for picture in self._pictures.values():
-                    picture.set_worst(self.worst)
-                self.parts.waiting(False)
-                self._show(values)
+            if self._search_on():
+                self._draw(values)
+                self._tell()
             yield None
         if values["view"] == "equations":
             self._show_equations()
         yield REST
         self._keep_draft(values)
 
+    def _search_on(self) -> bool:
+        """One step of the search; whether it was the last."""
+        assert self._search is not None
+        try:
+            next(self._search)
+        except StopIteration as end:
+            self._worst, self._search = end.value, None
+        else:
+            return False
+        # A picture that is not shown may be about an earlier machine: it is made anew.
+        self._pictures = {k: v for k, v in self._pictures.items() if k == self._panel}
+        for picture in self._pictures.values():
+            picture.set_worst(self._worst)
+        self.parts.waiting(False)
+        return True
+
     def _show_equations(self) -> None:
         assert self.now is not None
         found = [f for f in self.now.findings if f.check.id == self.chosen]
-        worst = governing(found)
-        self.parts.equations.value = worst._repr_html_() if worst else ""
+        self.parts.equations.value = (governing(found) or found[0])._repr_html_()
+
+    def _say(self, text: str) -> None:
+        """A message that stays until the log or the machine changes."""
+        self._said_about = None
+        self.parts.say(text)
 
     def _show_error(self, error: Exception) -> None:
         if isinstance(error, SaveError):
@@ -323,9 +389,12 @@ class MainBeam:
         told = [str(error) or type(error).__name__]
         if isinstance(error, InputError):
             told = [str(problem) for problem in error.problems]
-            self._machine.tell(error.problems)
+            if self._machine.tell(error.problems):
+                told.append("Choose otherwise, or change it in the machine file.")
         text = "<br>".join(map(html.escape, told))
-        self.parts.sentence.value = f"<div><b>No result for these values.</b> {text}</div>"
+        self.parts.sentence.value = (
+            f"<div><b class='splitcalc-error'>No result for these values.</b> {text}</div>"
+        )
         self.parts.stale(True)
 
     # --- the draft ----------------------------------------------------------------------------
@@ -336,8 +405,10 @@ class MainBeam:
             return  # what an earlier session kept is not overwritten before it is answered
         if self._changes or log != straight(self.numbers):
             keep(path, Draft(self.file.digest, log, self._changes))
-        else:
+            self._wrote = True
+        elif self._wrote:  # another page's is left alone
             drop(path)
+            self._wrote = False
 
     def _offer_draft(self) -> None:
         if self._kept is None:
@@ -353,12 +424,15 @@ class MainBeam:
 
     def take_back(self) -> None:
         """The values that an earlier session left."""
-        left, self._kept = self._kept, None
-        assert left is not None
+        left = self._kept
+        if left is None:
+            return
         self._begin(self.file.changed(left.changes), dict(left.changes))
+        self._sliders += [k for k in left.changes if k not in OFFERED and k not in self._sliders]
         start = straight(self.numbers)
+        self._kept, self._wrote = None, True
         self._make_controls({k: left.values.get(k, value) for k, value in start.items()})
-        self.parts.say("Back to the values of the earlier session.")
+        self._say("Back to the values of the earlier session.")
         self.live.draw()
 
     def drop_draft(self) -> None:
@@ -374,6 +448,17 @@ def _values(finding: Finding, pivot: str) -> dict[str, Any]:
     log = finding.log or {}
     offsets = (log[f"{name}_m"] for name in ("a_y", "a_z", "b_y", "b_z"))
     return values_of(Log(log["distance_m"], *offsets), log["state"], pivot)
+
+
+def _station(now: Present) -> float | None:
+    """Where the present log is worst; None when that can't be given."""
+    governs = governing(now.findings)
+    return None if governs is None else governs.x
+
+
+def _red(text: str) -> str:
+    """As HTML, with what does not hold in red."""
+    return SHORT.sub(r"<b class='splitcalc-error'>\1</b>", html.escape(text))
 
 
 def _told(changes: dict[str, str]) -> str:

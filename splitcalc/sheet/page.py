@@ -16,7 +16,7 @@ VIEWS = ("stress", "actions", "equations")
 class Page:
     """Rail of controls, sentence, picture with its moving texts, equations, section, bars."""
 
-    def __init__(self, *, pin: Button, worst: list[Button], open_points: str, foot: str) -> None:
+    def __init__(self, *, pin: Button, worst: list[Button], open_points: str) -> None:
         size = Layout(width=f"{WIDTH}px", height=f"{HEIGHT}px")
         self.image = Image(format="png", width=WIDTH, height=HEIGHT, layout=size)
         self.labels = named(HTML(), "labels")
@@ -25,16 +25,15 @@ class Page:
         self.view = named(ToggleButtons(options=VIEWS, tooltips=VIEW_WORDS), "choice")
         self.past = named(HTML(), "past")
         self.sentence = named(HTML(), "sentence")
-        self.section, self.bars = HTML(), HTML()
+        self.section, self.bars, self.foot = HTML(), HTML(), HTML()
         self.names = named(VBox(), "names")
         self.rail = named(VBox(), "rail")
         self.message = named(HTML(), "message")
         self.unsaved_line = named(HTML(), "message")
         checks = named(Box([self.names, self.bars]), "checks")
-        side = [
-            heading("section, where it governs"), self.section,
-            heading("used of the limit"), checks, row(*worst), row(pin), HTML(small(open_points)),
-        ]  # fmt: skip
+        section = VBox([heading("section, where it governs"), self.section])
+        used = [heading("used of the limit"), checks, row(*worst), row(pin)]
+        side = [section, VBox([*used, HTML(small(open_points))])]
         view = named(Box([self.view, self.past]), "view")
         body = named(
             Box(
@@ -42,12 +41,12 @@ class Page:
                     self.rail,
                     self.sentence,
                     named(VBox([view, self.stage, self.equations]), "middle"),
-                    named(VBox(side), "side"),
+                    named(Box(side), "side"),
                 ]
             ),
             "body",
         )
-        self.box = named(VBox([HTML(STYLE), body, HTML(small(foot))]), "page")
+        self.box = named(VBox([HTML(STYLE), body, self.foot]), "page")
 
     def show_view(self, view: str) -> None:
         """The picture, or the equations in its place."""

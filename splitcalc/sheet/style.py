@@ -44,7 +44,8 @@ STYLE = f"""<style>
   grid-area: sentence; height: 72px; overflow: auto !important; /* four lines: nothing jumps */
 }}
 .splitcalc-middle {{ grid-area: stage; }}
-.splitcalc-side {{ grid-area: side; }}
+.splitcalc-side {{ grid-area: side; display: flex; flex-flow: row wrap; gap: 0 14px; }}
+.splitcalc-side > .widget-vbox {{ flex: 1 1 242px; }}
 
 .splitcalc-rail h4, .splitcalc-side h4 {{
   margin: 6px 0 2px; font-size: 12px; font-weight: 600; color: var(--sc-quiet);
@@ -78,9 +79,10 @@ STYLE = f"""<style>
 .splitcalc-buttons .jupyter-button {{ width: auto; flex: 1 1 auto; margin: 0; }}
 .splitcalc-side .splitcalc-buttons {{ margin: 4px 0; }}
 .splitcalc-side .jupyter-button {{ padding: 0 5px; }}
-.splitcalc-view {{ display: flex; height: 34px; overflow: hidden; }}
+.splitcalc-view {{ display: flex; height: 45px; overflow: hidden; }}
 .splitcalc-view .splitcalc-choice {{ width: auto; flex: none; }}
-.splitcalc-past {{ font-size: 12px; margin-left: 12px !important; }}
+.splitcalc-past {{ margin-left: 12px !important; overflow: auto; }}
+.splitcalc-past .widget-html-content {{ font-size: 11px; line-height: 15px; }}
 .splitcalc-message {{ white-space: normal; font-size: 12px; }}
 
 .splitcalc-stage {{ position: relative; width: {WIDTH}px; height: {HEIGHT}px; }}
@@ -90,8 +92,11 @@ STYLE = f"""<style>
   position: absolute; white-space: nowrap; font: 12px/13px sans-serif;
   text-shadow: 0 0 2px #fff, 0 0 2px #fff, 0 0 3px #fff;
 }}
-.splitcalc-equations {{ width: {WIDTH}px; height: {HEIGHT}px; overflow: auto !important; }}
-.{STALE} .splitcalc-stage img, .{STALE} .splitcalc-labels, .{STALE} .splitcalc-drawn {{
+.splitcalc-page .splitcalc-equations {{
+  width: {WIDTH}px; height: {HEIGHT}px; overflow: auto !important;
+}}
+.{STALE} .splitcalc-stage img, .{STALE} .splitcalc-labels, .{STALE} .splitcalc-equations,
+ .{STALE} .splitcalc-drawn {{
   opacity: 0.25; filter: grayscale(1);
 }}
 .{WAITING} .sc-worst {{ opacity: 0.35; }}
@@ -104,7 +109,7 @@ STYLE = f"""<style>
 .splitcalc-names .jupyter-button.mod-active {{ box-shadow: none; }}
 .splitcalc-names .splitcalc-chosen {{ font-weight: 700; border-right: 3px solid var(--sc-ink); }}
 .sc-row {{
-  height: {ROW}px; display: grid; grid-template: 15px 15px / 50px 1fr 44px; align-content: center;
+  height: {ROW}px; display: grid; grid-template: 15px 15px / 56px 1fr 44px; align-content: center;
   font-size: 11px; line-height: 15px; font-variant-numeric: tabular-nums;
 }}
 .sc-set {{ color: var(--sc-quiet); padding-left: 4px; }}

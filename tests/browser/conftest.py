@@ -18,6 +18,7 @@ import sys
 import tempfile
 import urllib.request
 from collections.abc import Callable, Iterator
+from contextlib import ExitStack, contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, NoReturn
@@ -25,7 +26,7 @@ from typing import TYPE_CHECKING, Any, NoReturn
 import pytest
 
 if TYPE_CHECKING:
-    from playwright.sync_api import Browser, Page
+    from playwright.sync_api import Browser, Locator, Page
 
 WORKSHEETS = Path(__file__).resolve().parents[2] / "worksheets"
 CHROMIUM = Path("/usr/bin/chromium")
@@ -96,17 +97,50 @@ class Lab:
 
 
 class Notebook:
-    """A notebook that is open in the page, with all its cells run."""
+    """A notebook that is open in the page, with all its cells run; `path` is its file."""
 
-    def __init__(self, page: "Page") -> None:
-        self.page = page
+    def __init__(self, page: "Page", path: Path) -> None:
+        self.page, self.path = page, path
+
+    def slider(self, label: str | re.Pattern[str]) -> "Locator":
+        """The one slider whose label holds the text or matches the pattern."""
+        labels = self.page.locator(".widget-label").filter(has_text=label)
+        return self.page.locator(".widget-slider").filter(has=labels)
 
     def press_slider(self, label: str | re.Pattern[str], key: str, times: int = 1) -> None:
-        """Presses a key on the one slider whose label holds the text or matches the pattern."""
-        labels = self.page.locator(".widget-label").filter(has_text=label)
-        self.page.locator(".widget-slider").filter(has=labels).locator(".noUi-handle").focus()
+        """Presses a key on a slider."""
+        self.slider(label).locator(".noUi-handle").focus()
         for _ in range(times):
             self.page.keyboard.press(key)
+
+    def drag_slider(self, label: str | re.Pattern[str], by: float) -> None:
+        """Drags a slider's handle so many css pixels to the right, in steps of a few."""
+        handle = self.slider(label).locator(".noUi-handle")
+        handle.scroll_into_view_if_needed()
+        box = handle.bounding_box()
+        assert box is not None, f"{label} is not on screen"
+        x, y = box["x"] + box["width"] / 2, box["y"] + box["height"] / 2
+        self.page.mouse.move(x, y)
+        self.page.mouse.down()
+        self.page.mouse.move(x + by, y, steps=8)
+        self.page.mouse.up()
+
+    def slider_value(self, label: str | re.Pattern[str]) -> float:
+        """Where the handle stands, by what the browser knows."""
+        return self.slider(label).locator(".noUi-target").evaluate("e => +e.noUiSlider.get()")
+
+    def run_all(self) -> None:
+        """Runs all cells; AssertionError with the error's text when one ends in an error."""
+        self.page.evaluate(RUN_ALL)
+        self.page.wait_for_function("window.allRun")
+        self.page.locator(".jp-Notebook-ExecutionIndicator[data-status=idle]").wait_for()
+        errors = self.page.evaluate(ERRORS)
+        if errors:
+            raise AssertionError(re.sub(r"\x1b\[[0-9;]*m", "", "\n\n".join(errors)))
+
+    def restart_kernel(self) -> None:
+        """Starts the kernel anew; nothing is run yet."""
+        self.page.evaluate("jupyterapp.shell.currentWidget.sessionContext.session.kernel.restart()")
 
     def picture_inputs(self, **expected: object) -> dict[str, Any]:
         """The inputs of the picture on screen, read as soon as they hold what is expected.
@@ -166,12 +200,17 @@ def wait_for_lab(server: "subprocess.Popen[bytes]", folder: Path, log: Path) -> 
     pytest.fail(f"JupyterLab does not answer:\n{log.read_text()}")
 
 
-@pytest.fixture
-def worksheets(lab: Lab) -> Path:
+def copy_worksheets(lab: Lab) -> Path:
     """A fresh copy of the worksheets, inside the server's folder."""
     folder = Path(tempfile.mkdtemp(dir=lab.folder))
     ignore = shutil.ignore_patterns(".*")
     return shutil.copytree(WORKSHEETS, folder, ignore=ignore, dirs_exist_ok=True)
+
+
+@pytest.fixture
+def worksheets(lab: Lab) -> Path:
+    """A fresh copy of the worksheets, inside the server's folder."""
+    return copy_worksheets(lab)
 
 
 # For a module, not the session: while playwright runs, this thread counts as inside a running
@@ -191,8 +230,8 @@ def browser() -> Iterator["Browser"]:
         chromium.close()
 
 
-@pytest.fixture
-def page(browser: "Browser") -> Iterator["Page"]:
+@contextmanager
+def fresh_page(browser: "Browser") -> Iterator["Page"]:
     """An empty page of a fresh profile, 1280 x 800 pixels."""
     with browser.new_context(viewport={"width": 1280, "height": 800}) as profile:
         profile.set_default_timeout(LIMIT * 1000)
@@ -201,26 +240,42 @@ def page(browser: "Browser") -> Iterator["Page"]:
         page.evaluate("window.jupyterapp?.serviceManager.sessions.shutdownAll()")
 
 
+def open_and_run(page: "Page", lab: Lab, path: Path) -> Notebook:
+    """Opens a notebook and runs all its cells."""
+    name = path.relative_to(lab.folder).as_posix()
+    page.goto(f"{lab.url}lab/tree/{name}?token={lab.token}&reset")
+    page.wait_for_function(
+        "(path) => window.jupyterapp?.shell?.currentWidget?.context?.path === path", arg=name
+    )
+    page.evaluate("jupyterapp.shell.currentWidget.sessionContext.ready")
+    notebook = Notebook(page, path)
+    notebook.run_all()
+    return notebook
+
+
+@pytest.fixture
+def page(browser: "Browser") -> Iterator["Page"]:
+    """An empty page of a fresh profile, 1280 x 800 pixels."""
+    with fresh_page(browser) as page:
+        yield page
+
+
 @pytest.fixture
 def open_notebook(page: "Page", lab: Lab, worksheets: Path) -> Callable[[str], Notebook]:
     """Opens a notebook of the folder `worksheets` and runs all its cells.
 
     Raises AssertionError with the error's text when a cell ends in an error.
     """
+    return lambda name: open_and_run(page, lab, worksheets / name)
 
-    def open_and_run(name: str) -> Notebook:
-        path = f"{worksheets.name}/{name}"
-        page.goto(f"{lab.url}lab/tree/{path}?token={lab.token}&reset")
-        page.wait_for_function(
-            "(path) => window.jupyterapp?.shell?.currentWidget?.context?.path === path", arg=path
-        )
-        page.evaluate("jupyterapp.shell.currentWidget.sessionContext.ready")
-        page.evaluate(RUN_ALL)
-        page.wait_for_function("window.allRun")
-        page.locator(".jp-Notebook-ExecutionIndicator[data-status=idle]").wait_for()
-        errors = page.evaluate(ERRORS)
-        if errors:
-            raise AssertionError(re.sub(r"\x1b\[[0-9;]*m", "", "\n\n".join(errors)))
-        return Notebook(page)
 
-    return open_and_run
+@pytest.fixture(scope="module")
+def open_for_module(browser: "Browser", lab: Lab) -> Iterator[Callable[[str], Notebook]]:
+    """The same for several tests: each notebook in a page and in worksheets of its own."""
+    with ExitStack() as stack:
+
+        def open_notebook(name: str) -> Notebook:
+            page = stack.enter_context(fresh_page(browser))
+            return open_and_run(page, lab, copy_worksheets(lab) / name)
+
+        yield open_notebook
