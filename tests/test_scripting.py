@@ -257,9 +257,9 @@ def test_a_log_past_its_limits_is_worked_out_and_says_so(us):
     assert result.set == "outside"
     assert [f.set for f in result.findings] == ["extreme"] * len(ALL)
     assert len(result.past) == 1  # the push plate is wide enough, the wedge is not
-    assert "contact on the fixed tool" in result.past[0]
+    assert "contact off the fixed tool" in result.past[0]
     for text in (repr(result), result._repr_html_()):
-        assert "Not an allowed log, judged as an extreme one: contact on the fixed" in text
+        assert "Not an allowed log, judged as an extreme one: contact off the fixed" in text
 
 
 # --- findings ------------------------------------------------------------------------------------

@@ -18,6 +18,7 @@ from splitcalc.units import MINUS, NARROW_SPACE
 Style = tuple[str, Any]
 ROUND = (1, 1.5, 2, 3, 4, 5, 6, 8, 10)
 COARSE = (1, 2, 5, 10)
+BESIDE = 8  # css px from the place where names are wanted: a mark may stand there
 
 
 def ceiling(value: float, steps: tuple[float, ...] = ROUND) -> float:
@@ -95,8 +96,8 @@ class Curves:
         """
         wide = CHARACTER * max(len(name) for name in self.lines)
         ends = [spot(self.axes, one, 0.0)[0] for one in x]
-        low, high = room.left + wide / 2, room.right - wide / 2
-        start, end = (max(min(one, high), low) for one in ends)
+        low, high = room.left, room.right - wide
+        start, end = (max(min(one + BESIDE, high), low) for one in ends)
         across = np.linspace(start, end, 9)
         places = np.array([self._at(place, room) for place in across])
         known = {
@@ -115,7 +116,7 @@ class Curves:
         return apart(
             (
                 label(name, (across[k], _off(y, guides)), str(self.lines[name].get_color()),
-                      "middle", room)
+                      "left", room)
                 for y, (_, _, name) in zip(heights, spots, strict=True)
             ),
             room,

@@ -16,7 +16,7 @@ OUTSIDE = "outside"
 NEAR = 2e-5  # of a metre, of a slope: rounding of a typed text is not a step past a limit
 ROUNDING = 1e-9  # m
 TOOLS = {"a": "moving tool", "b": "fixed tool"}
-WAYS = {"y": ("right of", "left of"), "z": ("below", "above")}
+WAYS = {"y": ("right", "left"), "z": ("down", "up")}
 
 
 def _places(numbers: Numbers, set_name: str, state: str, log: Log) -> Iterator[tuple[Any, ...]]:
@@ -64,7 +64,7 @@ def past_limits(numbers: Numbers, log: Log, state: str, units: Any = "si") -> li
             way = WAYS[name[2]][value > end]
             off.setdefault(TOOLS[name[0]], []).append(f"{by} {way}")
     return words + [
-        f"contact on the {tool} {' and '.join(ways)} its range" for tool, ways in off.items()
+        f"contact off the {tool}'s range by {', '.join(ways)}" for tool, ways in off.items()
     ]
 
 

@@ -148,5 +148,8 @@ def slidable(machine: Machine, key: str) -> tuple[Fact, Entry]:
 
 
 def _spacing(machine: Machine) -> Entry:
-    numbers = machine.numbers()
-    return Entry(float(numbers.rear_pad - numbers.front_pad), "")
+    """The pads' distance, with the text that it comes from in the file: it tells the unit."""
+    numbers, sled = machine.numbers(), machine.document.sled
+    source = sled.guide_length if sled.guide == "continuous" else sled.rear_pad
+    assert source is not None
+    return Entry(float(numbers.rear_pad - numbers.front_pad), source.text)

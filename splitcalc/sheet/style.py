@@ -90,7 +90,7 @@ STYLE = f"""<style>
 .splitcalc-labels {{ position: absolute; inset: 0; pointer-events: none; }}
 .splitcalc-labels span {{
   position: absolute; white-space: nowrap; font: 12px/13px sans-serif;
-  text-shadow: 0 0 2px #fff, 0 0 2px #fff, 0 0 3px #fff;
+  text-shadow: 0 0 2px #fff, 0 0 3px #fff; background: #ffffffa0; border-radius: 3px;
 }}
 .splitcalc-page .splitcalc-equations {{
   width: {WIDTH}px; height: {HEIGHT}px; overflow: auto !important;

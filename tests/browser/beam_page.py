@@ -126,10 +126,11 @@ class BeamPage:
         """Waits for a message under the buttons."""
         self.until(lambda read: text not in read["message"] and (text, read["message"]))
 
-    def space(self, spacing: float) -> None:
+    def space(self, spacing: float, units: str | None = None) -> None:
         """The pads stand so far apart [m], the front pad where it is, as the file would say it."""
-        rear = (self.machine.document.sled.front_pad.si + spacing) * self.per("pad spacing")
-        unit = unit_text(Dimension.LENGTH, self.units)
+        units = units or self.units
+        per, unit = factor(Dimension.LENGTH, units), unit_text(Dimension.LENGTH, units)
+        rear = (self.machine.document.sled.front_pad.si + spacing) * per
         self.spacing, self.changes["sled.rear_pad"] = spacing, f"{rear:.9g} {unit}"
 
     def per(self, label: str) -> float:
@@ -214,7 +215,7 @@ def differences(
                 share, u = bar[kind], used.get((kind, check.id, name))
                 if (share is None) != (u is None):
                     yield check.title, kind, bar, u
-                if share is None:
+                if share is None or u is None:
                     continue
                 # The page's lengths have one decimal of a percent.
                 near = 0.06 * (1 + u) / bar["limit"]

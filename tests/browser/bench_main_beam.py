@@ -6,6 +6,9 @@ no cropping, nothing else on the page. A normal run does not collect this file:
 
     pytest -s tests/browser/bench_main_beam.py
 
+At the end the floor: one slider and a blank picture, nothing computed and nothing drawn. What
+JupyterLab and the browser take of themselves on this machine is that.
+
 It asserts that both show the same numbers; times are only printed. Some pixels differ: what moves
 is drawn last on our page, in its own order with the rest by matplotlib alone. A frame counts when
 the browser is about to paint it. Keys are told to the slider by a timer of the page itself.
@@ -72,6 +75,21 @@ sliders = {
     for name, (value, low, high, step) in SLIDERS.items()
 }
 ipywidgets.interact(show, **sliders);
+"""
+BARE = """
+import ipywidgets, numpy as np
+from splitcalc.draw import png
+from splitcalc.sheet.live import Live
+blank = np.full((560, 600, 4), 255, dtype=np.uint8)
+slider = ipywidgets.FloatSlider(min=-24, max=24, step=0.2, description="skew left")
+image, text = ipywidgets.Image(format="png", width=600, height=560), ipywidgets.HTML()
+def update(values):
+    image.value, text.value = png.encode(blank, values), str(values)
+live = Live({"skew_left": slider}, update, print)
+live.draw()
+box = ipywidgets.VBox([slider, image, text])
+box.add_class("bare")
+box
 """
 OPTIONS = """() => [...document.querySelectorAll('.splitcalc-number .noUi-target')].slice(0, 5)
     .map((e) => e.noUiSlider).map((s) => [+s.get(), s.options.range.min, s.options.range.max,
@@ -192,6 +210,9 @@ def test_the_page_against_the_stock_way(open_for_module, open_notebook, workshee
     ours = Way(beam.notebook, ".splitcalc-stage img")
     stock = Way(open_notebook("stock.ipynb"), 'img[src^="data:image/png"]')
     assert_the_same(beam, ours, stock)
+    cell = nbformat.v4.new_code_cell(BARE)
+    floor = nbformat.v4.new_notebook(metadata=kernel, cells=[cell])
+    nbformat.write(floor, worksheets / "bare.ipynb")
 
     print("run  way       key to picture, ms   pictures/s   gap, ms            catch-up")
     print("                 median      p95      held key     median      p95       ms")
@@ -213,3 +234,7 @@ def test_the_page_against_the_stock_way(open_for_module, open_notebook, workshee
             f"     relief pressure, all logs searched anew: {rate:.1f} pictures/s, gap "
             f"{spread(gaps)}, longest {gaps.max():.0f}, catch-up {catch_up:.0f} ms"
         )
+    bare = Way(open_notebook("bare.ipynb"), ".bare img")
+    single = bare.single()
+    rate, catch_up, gaps = bare.held("skew left", "ArrowRight")
+    print(f"     bare      {spread(single)} {rate:13.1f} {spread(gaps)} {catch_up:8.0f}")
