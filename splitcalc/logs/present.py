@@ -11,7 +11,7 @@ import numpy as np
 from splitcalc.findings import Check, Finding
 from splitcalc.logs.allowed import FIRST_BITE
 from splitcalc.logs.limits import OUTSIDE, narrowest_set, past_limits
-from splitcalc.logs.report import acting_on, find, in_set
+from splitcalc.logs.report import acting_on, find, governing, in_set
 from splitcalc.machine.numbers import SETS, Numbers
 from splitcalc.shapes.section import Section
 from splitcalc.stress.normal_and_shear import equivalent_stress, signed_stresses
@@ -54,6 +54,12 @@ class Present:
         """Normal stress at the four outermost fibres. [Pa]"""
         points = corner_points(self.numbers.section)
         return {name: self.sigma[:, k] for name, k in zip(CORNERS, points, strict=True)}
+
+    @property
+    def worst_x(self) -> float | None:
+        """Where the governing check is worst [m]; None when that can't be given."""
+        governs = governing(self.findings)
+        return None if governs is None else governs.x
 
 
 def log_through(

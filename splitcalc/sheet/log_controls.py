@@ -8,8 +8,9 @@ from typing import Any
 
 from ipywidgets import Button, VBox
 
+from splitcalc.findings import Finding
 from splitcalc.inputs import Entry, Fact
-from splitcalc.logs.allowed import FIRST_BITE, STATES
+from splitcalc.logs.allowed import FIRST_BITE, OFFSETS, STATES
 from splitcalc.logs.limits import sideways_reach
 from splitcalc.logs.present import FIXED, MOVING, log_through
 from splitcalc.machine.numbers import Numbers
@@ -60,6 +61,13 @@ def values_of(log: Log, state: str, pivot: str) -> dict[str, Any]:
         "contact_left": float(left),
         "distance": float(log.l_AB),
     }
+
+
+def values_of_finding(finding: Finding, pivot: str) -> dict[str, Any]:
+    """The values that describe the log of a finding."""
+    log = finding.log or {}
+    offsets = (log[f"{name}_m"] for name in OFFSETS)
+    return values_of(Log(log["distance_m"], *offsets), log["state"], pivot)
 
 
 class LogControls:

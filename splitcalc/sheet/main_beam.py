@@ -2,17 +2,14 @@
 
 from __future__ import annotations
 
-import html
 import math
-import re
-from collections.abc import Callable, Generator, Mapping
+from collections.abc import Callable, Mapping
 from time import perf_counter
 from types import MappingProxyType
 from typing import Any
 
-from ipywidgets import HTML, Layout, VBox
+from ipywidgets import HTML, VBox
 
-from splitcalc.cautions import CAUTIONS, NOT_COVERED
 from splitcalc.checks import ALL, NOT_YET
 from splitcalc.draw.main_beam import MainBeamPicture, still
 from splitcalc.draw.section import section_svg
@@ -21,35 +18,33 @@ from splitcalc.findings import Check, Finding
 from splitcalc.inputs import InputError
 from splitcalc.logs.limits import sled_off
 from splitcalc.logs.present import CORNERS, Present, present
-from splitcalc.logs.report import findings, findings_in_steps, governing
-from splitcalc.logs.words import sentence, still_open, this_log
-from splitcalc.machine.draft import Draft, drop, keep, kept
+from splitcalc.logs.report import governing
+from splitcalc.logs.words import still_open
+from splitcalc.machine.draft import Draft
 from splitcalc.machine.file import Machine, load
 from splitcalc.machine.numbers import SETS
 from splitcalc.machine.save import SaveError, save
+from splitcalc.sheet import phrases
 from splitcalc.sheet.bars import bars, by_check_and_set
 from splitcalc.sheet.controls import buttons_of
+from splitcalc.sheet.drafts import Drafts
 from splitcalc.sheet.live import Live, Work
-from splitcalc.sheet.log_controls import LogControls, log_of, plain, straight, values_of
+from splitcalc.sheet.log_controls import LogControls, log_of, plain, straight, values_of_finding
 from splitcalc.sheet.machine_controls import MOVES, OFFERED, MachineControls, slidable
 from splitcalc.sheet.page import Page, button, heading, named, row, small
-from splitcalc.sheet.style import ROW
-from splitcalc.thrust.frame import Log
+from splitcalc.sheet.worst import WorstLogs
 
 # Seconds. While a hand moves, words and bars change no quicker than an eye can read, so that the
-# picture keeps up with it; when it stops they follow.
-READ, SETTLE = 0.12, 0.05
+# picture keeps up with it; when it stops they follow; when it rests the draft is kept.
+READ, SETTLE, REST = 0.12, 0.05, 0.4
 NONE: Mapping[str, Any] = MappingProxyType({})
-SHORT = re.compile(r"(\S+ % over its limit|just over its limit|\d+ of \d+ findings fall short)")
-REST = 0.4  # seconds that the hand rests before equations are written and the draft is kept
 
 
 class MainBeam:
     """The page and what it knows; `page` is what a notebook shows.
 
     file : the machine as it stands in its file; machine : with the changes of the controls
-    now : the log of the controls, None while there is none
-    controls : by name, each with a `value`
+    now : the log of the controls, None while there is none; controls : by name
     """
 
     live: Live
@@ -59,15 +54,15 @@ class MainBeam:
         self.units = machine.units
         self.checks: tuple[Check, ...] = ALL
         self.numbers = machine.numbers()
-        self._worst = findings(self.checks, self.numbers, self.units)
-        worst = governing(self._worst)
+        self._worst = WorstLogs()
+        self._worst.begin(self.checks, self.numbers, self.units)
+        worst = governing(self._worst.finish())
         self.chosen = worst.check.id if worst else self.checks[0].id
         self.now: Present | None = None
         self.pinned: Present | None = None
         self._sliders: list[str] = []  # that a person added: keys of the file
         self._lines: dict[str, Callable[[Present], Any]] = {}  # likewise
         self._changes: dict[str, str] = {}
-        self._search: Generator[None, None, list[Finding]] | None = None
         self._pictures: dict[str, MainBeamPicture] = {}  # by what they show under the machine
         self._panel = "stress"
         self._told: Present | None = None  # whose words and bars are shown, and since when
@@ -79,8 +74,7 @@ class MainBeam:
         ]
         self.parts = Page(pin=self._pin, worst=go, open_points=still_open(NOT_YET))
         self.page = self.parts.box
-        self._kept = None if machine.path is None else kept(machine.path)
-        self._wrote = False  # whether the draft beside the file is this page's
+        self._drafts = Drafts(machine.path)
         self._said_about: Any = None  # what the message under the buttons was said about
         self._make_names()
         self._make_controls(straight(self.numbers))
@@ -89,9 +83,10 @@ class MainBeam:
     @property
     def worst(self) -> list[Finding]:
         """Findings at the worst allowed logs of `machine`; waits for the search."""
-        while self._search is not None:
-            self._search_on()
-        return self._worst
+        if self._worst.running:
+            self._worst.finish()
+            self._found()
+        return self._worst.found
 
     def _button(self, text: str, tooltip: str, action: Callable[..., None], *args: object) -> Any:
         return button(text, tooltip, lambda: self.live.guard(action, *args))
@@ -132,16 +127,10 @@ class MainBeam:
 
     def _make_names(self) -> None:
         """A button beside each bar."""
-        names = []
-        for check in self.checks:
-            name = self._button(check.title, "its equations, for this log", self.choose, check.id)
-            name.layout = Layout(height=f"{ROW}px")
-            if check.id == self.chosen:
-                name.add_class("splitcalc-chosen")
-            names.append(name)
-        self.parts.names.children = names
-
-    # --- what the buttons do ------------------------------------------------------------------
+        why = "its equations, for this log"
+        self.parts.name_checks(
+            {c.id: self._button(c.title, why, self.choose, c.id) for c in self.checks}, self.chosen
+        )
 
     def choose(self, check_id: str) -> None:
         """Chooses a check: shows its equations, and the buttons go to its worst logs."""
@@ -152,13 +141,13 @@ class MainBeam:
 
     def go(self, set_name: str) -> None:
         """Sets the controls to the worst log of the chosen check in a set."""
-        finding = by_check_and_set(self._worst).get((self.chosen, set_name))
-        if self._search is not None or finding is None or finding.log is None:
-            why = "it is being searched" if self._search is not None else finding and finding.why
+        finding = by_check_and_set(self._worst.found).get((self.chosen, set_name))
+        if self._worst.running or finding is None or finding.log is None:
+            why = "it is being searched" if self._worst.running else finding and finding.why
             self._say(f"There is no worst {set_name} log of this check to go to: {why}.")
             return
         with self.live.together():
-            self._log.take(_values(finding, self._log.controls["pivot"].value))
+            self._log.take(values_of_finding(finding, self._log.controls["pivot"].value))
             if self.parts.view.value == "equations":
                 self.parts.view.value = "stress"
         self._say(f"Worst {set_name} log of “{finding.check.title}”: {finding.log['bound']}.")
@@ -194,7 +183,7 @@ class MainBeam:
         values = self._log.values()
         self._begin(self.file, {})
         self._make_controls(values)
-        self._say(f"Saved: {_told(changes)}.")
+        self._say(f"Saved: {phrases.told(changes)}.")
         self.live.draw()
 
     def show_in(self, units: Any) -> None:
@@ -204,8 +193,6 @@ class MainBeam:
         self._begin(self.machine, self._changes)
         self._make_controls(values, entries)
         self.live.draw()
-
-    # --- a person's own -----------------------------------------------------------------------
 
     def add_slider(self, key: str) -> None:
         """A slider for any number of the machine file, by its dotted key.
@@ -252,11 +239,9 @@ class MainBeam:
         """A picture for the printed page: of the controls' log, or of a finding's."""
         now = self.now
         if finding is not None and finding.log is not None:
-            now = self._present(_values(finding, "fixed tool"))
+            now = self._present(values_of_finding(finding, "fixed tool"))
         assert now is not None
         return still(self.machine, now, self.worst, self.units)
-
-    # --- following the hand -------------------------------------------------------------------
 
     def _update(self, controls: dict[str, Any]) -> None:
         changes = self._machine.changes()
@@ -282,7 +267,7 @@ class MainBeam:
         self.machine, self._changes, self.numbers = machine, changes, machine.numbers()
         if redraw:
             self._pictures.clear()
-        self._search = findings_in_steps(self.checks, self.numbers, self.units)
+        self._worst.begin(self.checks, self.numbers, self.units)
         self.parts.waiting(True)
 
     def _present(self, values: dict[str, Any]) -> Present:
@@ -301,39 +286,30 @@ class MainBeam:
         self.parts.show_view(view)
         picture = self._picture(now)
         told = {**values, **self._changes, "units": self.units}
-        self.parts.image.value = picture.render(self.machine, now, told, _station(now))
-        self.parts.labels.value = "".join(map(_label, picture.labels()))
+        self.parts.image.value = picture.render(self.machine, now, told, now.worst_x)
+        self.parts.labels.value = "".join(map(phrases.label, picture.labels()))
 
     def _tell(self) -> None:
         """Section, bars and sentences."""
         self._told, self._told_at = self.now, perf_counter()
         now, parts = self.now, self.parts
         assert now is not None
-        x = _station(now)
+        x = now.worst_x
         svg = "" if x is None else section_svg(now, int(abs(now.x - x).argmin()), self.units)
         parts.section.value = f"<div class='splitcalc-drawn'>{svg}</div>"
-        parts.bars.value = bars(
-            self.checks,
-            now.findings,
-            self._worst,
-            () if self.pinned is None else self.pinned.findings,
-        )
-        all_logs = "being searched …" if self._search else sentence(self._worst)
-        parts.sentence.value = (
-            f"<div><b>This log</b> {_red(this_log(now, self.units))} "
-            f"<b>All allowed logs</b>: {_red(all_logs)} <b>Not yet checked</b>: "
-            f"{len(NOT_YET)} kinds of failure, listed under the bars.</div>"
-        )
-        past = f"Not an allowed log, judged as an extreme one: {'; '.join(now.past)}."
-        parts.past.value = f"<div>{html.escape(past)}</div>" if now.past else ""
-        parts.unsaved(_told(self._changes))
-        parts.foot.value = small(_foot(self.numbers.notes))
+        pinned = () if self.pinned is None else self.pinned.findings
+        parts.bars.value = bars(self.checks, now.findings, self._worst.found, pinned)
+        worst = None if self._worst.running else self._worst.found
+        parts.sentence.value = phrases.verdicts(now, worst, self.units)
+        parts.past.value = phrases.past_limits(now)
+        parts.unsaved(phrases.told(self._changes))
+        parts.foot.value = small(phrases.foot(self.numbers.notes))
 
     def _picture(self, now: Present) -> MainBeamPicture:
         """The picture of the chosen panel, made when it is first wanted."""
         if self._panel not in self._pictures:
             picture = MainBeamPicture(
-                self.machine, now, self._worst, self.units, self._panel, self._lines
+                self.machine, now, self._worst.found, self.units, self._panel, self._lines
             )
             picture.pin(self.pinned)
             self._pictures[self._panel] = picture
@@ -345,9 +321,10 @@ class MainBeam:
             yield SETTLE
             self._tell()
         yield None
-        while self._search is not None:
-            # not `yield from`: a drag drops this work, and the search goes on where it stands
-            if self._search_on():
+        while self._worst.running:
+            # a drag drops this work, and the search goes on where it stands
+            if self._worst.step():
+                self._found()
                 self._draw(values)
                 self._tell()
             yield None
@@ -356,21 +333,13 @@ class MainBeam:
         yield REST
         self._keep_draft(values)
 
-    def _search_on(self) -> bool:
-        """One step of the search; whether it was the last."""
-        assert self._search is not None
-        try:
-            next(self._search)
-        except StopIteration as end:
-            self._worst, self._search = end.value, None
-        else:
-            return False
+    def _found(self) -> None:
+        """After the search."""
         # A picture that is not shown may be about an earlier machine: it is made anew.
         self._pictures = {k: v for k, v in self._pictures.items() if k == self._panel}
         for picture in self._pictures.values():
-            picture.set_worst(self._worst)
+            picture.set_worst(self._worst.found)
         self.parts.waiting(False)
-        return True
 
     def _show_equations(self) -> None:
         assert self.now is not None
@@ -391,29 +360,19 @@ class MainBeam:
             told = [str(problem) for problem in error.problems]
             if self._machine.tell(error.problems):
                 told.append("Choose otherwise, or change it in the machine file.")
-        text = "<br>".join(map(html.escape, told))
-        self.parts.sentence.value = (
-            f"<div><b class='splitcalc-error'>No result for these values.</b> {text}</div>"
-        )
+        self.parts.sentence.value = phrases.no_result(told)
         self.parts.stale(True)
 
-    # --- the draft ----------------------------------------------------------------------------
-
     def _keep_draft(self, values: dict[str, Any]) -> None:
-        path, log = self.file.path, {k: values[k] for k in straight(self.numbers)}
-        if path is None or self._kept is not None:
-            return  # what an earlier session kept is not overwritten before it is answered
-        if self._changes or log != straight(self.numbers):
-            keep(path, Draft(self.file.digest, log, self._changes))
-            self._wrote = True
-        elif self._wrote:  # another page's is left alone
-            drop(path)
-            self._wrote = False
+        log = {k: values[k] for k in straight(self.numbers)}
+        begun = self._changes or log != straight(self.numbers)
+        self._drafts.keep(Draft(self.file.digest, log, self._changes) if begun else None)
 
     def _offer_draft(self) -> None:
-        if self._kept is None:
+        left = self._drafts.left
+        if left is None:
             return
-        other = self._kept.machine != self.file.digest
+        other = left.machine != self.file.digest
         told = "An earlier session left values that were not saved"
         text = f"{told}{'; the machine file has changed since' if other else ''}."
         self._offer.children = [
@@ -424,55 +383,18 @@ class MainBeam:
 
     def take_back(self) -> None:
         """The values that an earlier session left."""
-        left = self._kept
+        left = self._drafts.left
         if left is None:
             return
         self._begin(self.file.changed(left.changes), dict(left.changes))
         self._sliders += [k for k in left.changes if k not in OFFERED and k not in self._sliders]
         start = straight(self.numbers)
-        self._kept, self._wrote = None, True
+        self._drafts.taken()
         self._make_controls({k: left.values.get(k, value) for k, value in start.items()})
         self._say("Back to the values of the earlier session.")
         self.live.draw()
 
     def drop_draft(self) -> None:
         """Forgets them."""
-        self._kept = None
+        self._drafts.dropped()
         self._offer.children = []
-        if self.file.path is not None:
-            drop(self.file.path)
-
-
-def _values(finding: Finding, pivot: str) -> dict[str, Any]:
-    """The controls' values for the log of a finding."""
-    log = finding.log or {}
-    offsets = (log[f"{name}_m"] for name in ("a_y", "a_z", "b_y", "b_z"))
-    return values_of(Log(log["distance_m"], *offsets), log["state"], pivot)
-
-
-def _station(now: Present) -> float | None:
-    """Where the present log is worst; None when that can't be given."""
-    governs = governing(now.findings)
-    return None if governs is None else governs.x
-
-
-def _red(text: str) -> str:
-    """As HTML, with what does not hold in red."""
-    return SHORT.sub(r"<b class='splitcalc-error'>\1</b>", html.escape(text))
-
-
-def _told(changes: dict[str, str]) -> str:
-    return "; ".join(f"{key} = {text}" for key, text in changes.items())
-
-
-def _label(label: Any) -> str:
-    shift = {"left": "0", "middle": "-50%", "right": "-100%"}[label.side]
-    return (
-        f"<span style='left:{100 * label.x:.2f}%;top:{100 * label.y:.2f}%;color:{label.color};"
-        f"transform:translate({shift},-50%)'>{html.escape(label.text)}</span>"
-    )
-
-
-def _foot(notes: tuple[str, ...]) -> str:
-    noted = "".join(f"Note: {note}. " for note in notes)
-    return f"{noted}{CAUTIONS} Not covered: {'; '.join(NOT_COVERED)}."

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import html
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 
 from ipywidgets import HTML, Box, Button, Image, Layout, ToggleButtons, VBox, Widget
 
 from splitcalc.draw.labels import HEIGHT, WIDTH
-from splitcalc.sheet.style import STALE, STYLE, WAITING
+from splitcalc.sheet.style import ROW, STALE, STYLE, WAITING
 
 VIEWS = ("stress", "actions", "equations")
 
@@ -61,6 +61,14 @@ class Page:
     def waiting(self, is_waiting: bool) -> None:
         """Pales what belongs to the machine before its last change."""
         (self.box.add_class if is_waiting else self.box.remove_class)(WAITING)
+
+    def name_checks(self, buttons: Mapping[str, Button], chosen: str) -> None:
+        """A button beside each bar, by the check's id."""
+        for check_id, name in buttons.items():
+            name.layout = Layout(height=f"{ROW}px")
+            if check_id == chosen:
+                name.add_class("splitcalc-chosen")
+        self.names.children = list(buttons.values())
 
     def unsaved(self, changes: str) -> None:
         """What the controls have changed and the machine file doesn't know yet."""
