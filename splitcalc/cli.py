@@ -6,7 +6,6 @@ import argparse
 import json
 import os
 import sys
-import textwrap
 from pathlib import Path
 from typing import Any
 
@@ -14,14 +13,12 @@ from splitcalc import __version__
 from splitcalc.cautions import CAUTIONS, NOT_COVERED
 from splitcalc.inputs import InputError
 
-WIDTH = 100
-
 
 def _check(args: argparse.Namespace) -> int:
     from splitcalc.checks import ALL, NOT_YET
     from splitcalc.logs.allowed import ASSUMPTIONS
     from splitcalc.logs.report import findings, governing
-    from splitcalc.logs.words import sentence, still_open, table
+    from splitcalc.logs.words import sentence, still_open, table, wrapped
     from splitcalc.machine.file import load
 
     machine = load(args.file)
@@ -42,16 +39,16 @@ def _check(args: argparse.Namespace) -> int:
         }
         print(json.dumps(report, indent=1, ensure_ascii=False, allow_nan=False))
     else:
-        print(_wrapped(f"{machine.title}. {sentence(results)} {still_open(NOT_YET)}"))
+        print(wrapped(f"{machine.title}. {sentence(results)} {still_open(NOT_YET)}"))
         print()
         print("\n".join(table(results)))
         if numbers.notes:
             print()
-            print(_wrapped(f"Note: {'; '.join(numbers.notes)}."))
+            print(wrapped(f"Note: {'; '.join(numbers.notes)}."))
         print()
-        print(_wrapped(f"Not covered: {'; '.join(NOT_COVERED)}."))
+        print(wrapped(f"Not covered: {'; '.join(NOT_COVERED)}."))
         print()
-        print(_wrapped(CAUTIONS))
+        print(wrapped(CAUTIONS))
     return 0 if passed else 1
 
 
@@ -69,16 +66,13 @@ def _about(machine: Any) -> dict[str, str]:
     }
 
 
-def _wrapped(text: str) -> str:
-    return textwrap.fill(text, WIDTH, break_on_hyphens=False)
-
-
 def _open(args: argparse.Namespace) -> int:
+    from splitcalc.logs.words import wrapped
     from splitcalc.opening import prepare, run_lab
 
     folder, done = prepare(args.folder)
     print(f"worksheets in {folder}" + ("" if args.folder else " (a copy of the invented demo)"))
-    print("\n".join([*done, _wrapped(CAUTIONS)]))
+    print("\n".join([*done, wrapped(CAUTIONS)]))
     return run_lab(folder, args.server)
 
 

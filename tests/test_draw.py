@@ -3,7 +3,7 @@
 import io
 import itertools
 import re
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Any
 from xml.etree import ElementTree
@@ -15,7 +15,7 @@ from PIL import Image
 from splitcalc.checks import ALL
 from splitcalc.draw import palette
 from splitcalc.draw.action_panel import ActionPanel
-from splitcalc.draw.labels import HEIGHT, LINE, WIDTH, Label, Room, apart, label, overlaps
+from splitcalc.draw.labels import HEIGHT, LINE, WIDTH, Label, Room, apart, label
 from splitcalc.draw.main_beam import MainBeamPicture, still
 from splitcalc.draw.png import read_inputs
 from splitcalc.draw.section import section_svg
@@ -150,6 +150,16 @@ def test_names_stand_at_their_curves_in_their_order(demo: Demo, tan_left: float)
         # as many lines away as there are names in its way, at most
         near = sum(abs(y - other) < len(names) * LINE for other in heights)
         assert abs(one.y * HEIGHT - y) <= near * LINE / 2 + 1
+
+
+def overlaps(labels: Sequence[Label]) -> list[tuple[str, str]]:
+    """Pairs of labels whose boxes overlap."""
+    return [
+        (a.text, b.text)
+        for a, b in itertools.combinations(labels, 2)
+        if a.box[0] < b.box[2] and b.box[0] < a.box[2]
+        and a.box[1] < b.box[3] and b.box[1] < a.box[3]
+    ]  # fmt: skip
 
 
 def test_labels_move_by_the_least_that_clears_and_go_when_there_is_no_room() -> None:

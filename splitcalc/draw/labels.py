@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable
 from typing import NamedTuple
 
 from matplotlib.axes import Axes
@@ -85,13 +85,3 @@ def apart(labels: Iterable[Label], room: Room) -> list[Label]:
 def _meet(one: Label, other: Label, low: int, high: int) -> bool:
     a, b = one.box, other.box
     return a[low] < b[high] and b[low] < a[high]
-
-
-def overlaps(labels: Sequence[Label]) -> list[tuple[str, str]]:
-    """Pairs of labels whose boxes overlap."""
-    return [
-        (a.text, b.text)
-        for k, a in enumerate(labels)
-        for b in labels[:k]
-        if _meet(a, b, 0, 2) and _meet(a, b, 1, 3)
-    ]

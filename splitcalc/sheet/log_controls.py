@@ -23,10 +23,8 @@ STEEPEST = math.radians(60)  # what may be typed
 FAR = 1.0  # m, likewise
 NEAREST, FARTHEST = 1e-4, 10.0  # m, likewise
 PIVOTS = {"fixed tool": FIXED, "ram": MOVING}
-WORDS = ("state", "pivot")
-NUMBERS = ("skew_up", "skew_left", "contact_up", "contact_left", "distance")
 
-Values = Mapping[str, Any]  # by the names above: SI values and words
+Values = Mapping[str, Any]  # by the names in `straight`: SI values and words
 
 
 def straight(numbers: Numbers) -> dict[str, Any]:

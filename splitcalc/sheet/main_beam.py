@@ -328,6 +328,7 @@ class MainBeam:
                 self._draw(values)
                 self._tell()
             yield None
+        yield SETTLE
         if values["view"] == "equations":
             self._show_equations()
         yield REST
